@@ -12,7 +12,7 @@ struct CodeRow {
 
 // In the order of Code.
 constexpr std::array<CodeRow, 12> code_rows = {{
-    {"arm-speed", Level::error},
+    {"arm-speed", Level::warning},
     {"branch-flip", Level::error},
     {"joint-acceleration", Level::error},
     {"joint-jump", Level::error},

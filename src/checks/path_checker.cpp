@@ -16,10 +16,19 @@ constexpr double taught_orientation = 0.5 * radians_per_degree;
 /// How far an arrival may differ from the taught configuration.
 constexpr double mismatch_angle = 0.5 * radians_per_degree;
 constexpr double mismatch_length = 0.5;  // mm
+/// A pose is met again, and the configuration is the same, within these.
+constexpr double same_position = 1e-6;      // mm
+constexpr double same_orientation = 1e-8;   // rad
+constexpr double same_joints = 1e-6;        // rad or mm
+constexpr std::size_t most_visits = 1000;   // that are looked back at
 constexpr double half_turn = 1e-9;       // rad; a turn nearer to pi has no short way
 
 Pose tool_of(const Cell& cell, std::optional<int> tool) {
   return tool ? cell.tools[static_cast<std::size_t>(*tool)].placement : Pose{};
+}
+
+int bound_rows(Orientation orientation) {
+  return orientation == Orientation::full ? 6 : orientation == Orientation::axis ? 5 : 3;
 }
 
 bool binds(Orientation orientation) { return orientation == Orientation::full; }
@@ -41,7 +50,7 @@ std::pair<double, double> miss(const Pose& wanted, const Pose& now, Orientation 
 ToolContext::ToolContext(const Arm& the_arm, const Pose& tool, Orientation orientation)
     : chain(the_arm, tool),
       finder(the_arm, tool),
-      branches(the_arm, orientation),
+      branches(the_arm, orientation, tool),
       arm{the_arm, chain, finder, branches, orientation} {}
 
 PathChecker::PathChecker(const Path& path, const Cell& cell, const CheckOptions& options, CheckObserver* observer)
@@ -185,6 +194,8 @@ PathResult PathChecker::run(const JointVector& start, bool reached, bool taught)
   }
   result.notes = plan_.notes();
   Arrival at{start, reached};
+  visits_.clear();
+  visits_.push_back({waypoint(0).tool, plan_.programmed(0), start});
   const int count = static_cast<int>(path_.waypoints.size());
   for (int i = 1; i < count; ++i) {
     at = waypoint(i).move == Move::joint ? joint_segment(i, at, result) : cartesian_segment(i, at, result);
@@ -235,6 +246,7 @@ PathChecker::Arrival PathChecker::joint_segment(int index, const Arrival& from, 
                          [&](double) { return frame; },
                          [&](double) { return plan_.programmed(index); }};
   SegmentChecker checker(context, move, observer_);
+  if (observer_) observer_->begin_segment({index, nullptr, c.chain, move.duration()});
   move.run({options_.step_length, options_.step_angle}, checker);
   if (!target) {
     checker.lost(0.0, from.q);
@@ -289,6 +301,7 @@ PathChecker::Arrival PathChecker::cartesian_segment(int index, const Arrival& fr
                            return point.pose;
                          }};
   SegmentChecker checker(context, *follower, observer_);
+  if (observer_) observer_->begin_segment({index, &motion, c.chain, motion.duration()});
   const Follower::End end = follower->run(from.q, from.reached, branch_, checker);
   result.stopped = result.stopped || end.stopped;
   if (w.joints && end.reached) taught_mismatch(index, end.q, context, checker);
@@ -297,8 +310,26 @@ PathChecker::Arrival PathChecker::cartesian_segment(int index, const Arrival& fr
   const double measure = motion.length() > 0 ? motion.length() : motion.turn();
   cartesian_length_ += measure;
   proven_length_ += checker.proven_length() * measure;
+  if (end.reached && cell_.arm.joint_count() > bound_rows(w.orientation)) segment.drift = drift(index, end.q);
   absorb(index, std::move(segment), checker, context, from.q, end.q, result);
   return {end.q, end.reached};
+}
+
+/// An arm with joints to spare need not come back to the configuration in which it met a pose before.
+std::optional<JointVector> PathChecker::drift(int index, const JointVector& arrived) {
+  const Pose pose = plan_.programmed(index);
+  std::optional<JointVector> out;
+  for (auto it = visits_.rbegin(); it != visits_.rend(); ++it) {
+    if (it->tool != waypoint(index).tool || !((it->pose.position - pose.position).norm() < same_position) ||
+        !(rotation_vector(it->pose.rotation * pose.rotation.transpose()).norm() < same_orientation))
+      continue;
+    const JointVector change = arrived - it->joints;
+    if (change.cwiseAbs().maxCoeff() > same_joints) out = change;
+    break;
+  }
+  visits_.push_back({waypoint(index).tool, pose, arrived});
+  if (visits_.size() > most_visits) visits_.pop_front();
+  return out;
 }
 
 void PathChecker::taught_mismatch(int index, const JointVector& arrived, const SegmentContext& context,
@@ -346,6 +377,12 @@ void PathChecker::absorb(int index, SegmentResult segment, SegmentChecker& check
   segment.min_singular_value = checker.min_singular_value();
   segment.ratio_profile = checker.ratio_profile();
 
+  segment.peak_tcp_speed = checker.peak_tcp_speed();
+  if (const auto [point, speed] = checker.fastest_point(); point >= 0) {
+    segment.peak_point_speed = speed;
+    segment.peak_point = checker.point_name(point);
+  }
+
   std::vector<AxisTally> tallies = checker.tallies();
   if (!positioner_axes_.empty()) {
     std::vector<AxisTally> more;
@@ -391,7 +428,9 @@ void PathChecker::absorb(int index, SegmentResult segment, SegmentChecker& check
     segment.highest_speed = programmed / segment.peak_ratio;
     if (w.move == Move::joint) segment.highest_speed = std::min(1.0, *segment.highest_speed);
     for (Finding& f : checker.findings()) {
-      if (f.code == Code::joint_speed || f.code == Code::speed_margin) f.helpful_speed = programmed / f.ratio;
+      if (f.code == Code::joint_speed) f.helpful_speed = programmed / f.ratio;
+      if (f.code == Code::speed_margin) f.helpful_speed = programmed * options_.speed_margin / f.ratio;
+      if (f.code == Code::arm_speed) f.helpful_speed = programmed / f.ratio;
       if (f.code == Code::joint_acceleration) f.helpful_speed = programmed / std::sqrt(f.ratio);
     }
   }

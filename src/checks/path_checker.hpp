@@ -1,5 +1,6 @@
 #pragma once
 
+#include <deque>
 #include <map>
 #include <memory>
 
@@ -47,6 +48,7 @@ class PathChecker {
   Arrival cartesian_segment(int index, const Arrival& from, PathResult& result);
   [[nodiscard]] std::optional<JointVector> joint_target(int index, const JointVector& from);
   [[nodiscard]] std::optional<JointVector> exact_at(int index, const JointVector& near);
+  [[nodiscard]] std::optional<JointVector> drift(int index, const JointVector& arrived);
   void taught_mismatch(int index, const JointVector& arrived, const SegmentContext& context, SegmentChecker& checker);
   void absorb(int index, SegmentResult segment, SegmentChecker& checker, const SegmentContext& context,
               const JointVector& begin, const JointVector& end, PathResult& result);
@@ -60,6 +62,12 @@ class PathChecker {
   std::vector<Axis> positioner_axes_;
   std::map<std::pair<int, int>, std::unique_ptr<ToolContext>> contexts_;
   MotionPlan plan_;
+  struct Visit {
+    std::optional<int> tool;
+    Pose pose;
+    JointVector joints;
+  };
+  std::deque<Visit> visits_;  // of redundant arms, the latest last
   std::string branch_;
   double proven_length_ = 0, cartesian_length_ = 0;
 };

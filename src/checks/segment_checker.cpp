@@ -26,7 +26,8 @@ double speed_slope(const Axis& axis, const Node& n) {
 }
 
 bool is_rate(Code code) {
-  return code == Code::joint_speed || code == Code::speed_margin || code == Code::joint_acceleration;
+  return code == Code::joint_speed || code == Code::speed_margin || code == Code::joint_acceleration ||
+         code == Code::arm_speed;
 }
 
 /// Third derivatives by t of the quintic through a step's ends.
@@ -68,6 +69,7 @@ SegmentChecker::SegmentChecker(const SegmentContext& context, const StepSampler&
     : context_(context),
       sampler_(sampler),
       observer_(observer),
+      points_(context.arm.arm, context.arm.chain),
       tallies_(context.axes.size()),
       ratio_profile_(profile_bins, 0.0),
       rate_scale_(context.duration > 0 ? 1.0 / context.duration : 0.0) {
@@ -105,6 +107,16 @@ SegmentChecker::SegmentChecker(const SegmentContext& context, const StepSampler&
     }
     watch_range_.emplace_back(first, watches_.size());
   }
+  if (o.reduced_speed) {
+    for (int point = 0; point < points_.count(); ++point) {
+      Watch watch;
+      watch.code = Code::arm_speed;
+      watch.point = point;
+      watch.limit = *o.reduced_speed;
+      watch.level = *o.reduced_speed * (1 + limit_tolerance);
+      point_watches_.push_back(watch);
+    }
+  }
   singular_.code = Code::singular_pass;
   singular_.limit = singular_.level = o.singular_below;
   unproven_.code = Code::unproven;
@@ -117,9 +129,11 @@ bool SegmentChecker::step(const Step& step, double position_residual, double ori
     tally(i, step);
     check_axis(i, step);
   }
+  check_points(step);
   check_singular(step);
   if (context_.cartesian) check_proof(step);
   trace(step, position_residual, orientation_residual);
+  if (observer_) observer_->step(context_.index, step, sampler_);
   ++samples_;
   return true;
 }
@@ -155,6 +169,7 @@ void SegmentChecker::tally(std::size_t index, const Step& step) {
   if (rate_a * rate_b < 0 && std::abs(rate_a - rate_b) > slope_noise * std::abs(b)) {
     const Spot end{step.length, step.end};
     const Spot turn = root_between(sampler_, step, begin, end, [&](const Spot& s) { return axis.of(s.node.rate); });
+    show_extreme(step, turn.node);
     const double q = axis.of(turn.node.q);
     t.min = std::min(t.min, q);
     t.max = std::max(t.max, q);
@@ -188,7 +203,10 @@ void SegmentChecker::tally(std::size_t index, const Step& step) {
     if (rise * rate_scale_ / *axis.speed > t.peak_ratio) {
       const Spot end{step.length, step.end};
       Spot top;
-      if (extreme_between(sampler_, step, begin, end, slope, top)) take(top.node);
+      if (extreme_between(sampler_, step, begin, end, slope, top)) {
+        take(top.node);
+        show_extreme(step, top.node);
+      }
     }
   }
 }
@@ -267,6 +285,52 @@ void SegmentChecker::check_acceleration(Watch& watch, const Axis& axis, const St
       [&](const Spot& s) { return numerator_slope(s) * cube(s) - numerator(s) * cube_slope(s); });
 }
 
+/// Speeds of the joint centres and the TCP: their greatest for the report, and stretches above a reduced speed.
+void SegmentChecker::check_points(const Step& step) {
+  std::array<double, max_joints> at_end;
+  points_.speeds(step.end, at_end);
+  const auto take = [&](const Node& node, const std::array<double, max_joints>& speeds) {
+    if (at_fold(step, node)) return;
+    const double scale = rate_scale_ / node.fraction_rate;
+    for (int i = 0; i < points_.count(); ++i) {
+      double& fastest = fastest_[static_cast<std::size_t>(i)];
+      fastest = std::max(fastest, speeds[static_cast<std::size_t>(i)] * scale);
+    }
+  };
+  if (samples_ == 0) {
+    std::array<double, max_joints> at_begin;
+    points_.speeds(step.begin, at_begin);
+    take(step.begin, at_begin);
+  }
+  take(step.end, at_end);
+  for (Watch& watch : point_watches_) {
+    const auto speed = [&](const Spot& s) { return points_.at(s.node)[static_cast<std::size_t>(watch.point)]; };
+    const auto score = [&](const Spot& s) { return speed(s).value / s.node.fraction_rate * rate_scale_; };
+    const auto slope = [&](const Spot& s) {
+      return speed(s).slope * rate_scale_ - watch.level * s.node.fraction_rate_rate;
+    };
+    // No proven bound: four times the mean second derivative over the step stands in for its greatest.
+    const double second =
+        4 * std::abs(slope({step.length, step.end}) - slope({0, step.begin})) / step.length + 1e-9 * watch.level;
+    watch_step(
+        watch, step, [&](const Spot& s) { return speed(s).value * rate_scale_ - watch.level * s.node.fraction_rate; },
+        slope, second, score,
+        [&](const Spot& s) {
+          const PointSpeeds::Speed at = speed(s);
+          return at.slope * s.node.fraction_rate - at.value * s.node.fraction_rate_rate;
+        });
+  }
+}
+
+std::pair<int, double> SegmentChecker::fastest_point() const {
+  std::pair<int, double> out{-1, 0.0};
+  for (int i = 0; i + 1 < points_.count(); ++i) {
+    const double speed = fastest_[static_cast<std::size_t>(i)];
+    if (out.first < 0 || speed > out.second) out = {i, speed};
+  }
+  return out;
+}
+
 template <typename F, typename D, typename S, typename E>
 void SegmentChecker::watch_step(Watch& watch, const Step& step, F value, D slope, double bound, S score, E score_slope) {
   const Spot begin{0, step.begin};
@@ -297,8 +361,10 @@ void SegmentChecker::watch_step(Watch& watch, const Step& step, F value, D slope
       }
       Spot top;
       if (!watch.unbounded && score_slope(from) > 0 && score_slope(to) < 0 &&
-          extreme_between(sampler_, step, from, to, score_slope, top))
+          extreme_between(sampler_, step, from, to, score_slope, top)) {
         widen(watch, top.node, score(top));
+        show_extreme(step, top.node);
+      }
       if (i + 1 < spots.size()) close(watch, to.node.fraction);
     } else if (watch.open) {
       close(watch, from.node.fraction);
@@ -378,6 +444,14 @@ void SegmentChecker::close(Watch& watch, double fraction) {
         f.ratio = watch.score / *axis->acceleration;
       }
       break;
+    case Code::arm_speed:
+      f.quantity = Quantity::linear_speed;
+      f.point = points_.name(watch.point);
+      if (!watch.unbounded) {
+        f.value = watch.score;
+        f.ratio = watch.score / watch.limit;
+      }
+      break;
     case Code::singular_pass:
       f.quantity = Quantity::pure;
       f.value = -watch.score;
@@ -391,6 +465,7 @@ void SegmentChecker::close(Watch& watch, double fraction) {
 
 void SegmentChecker::close_all(double fraction) {
   for (Watch& watch : watches_) close(watch, fraction);
+  for (Watch& watch : point_watches_) close(watch, fraction);
   close(singular_, fraction);
   close(unproven_, fraction);
   before_.reset();
@@ -475,6 +550,7 @@ void SegmentChecker::lowest_singular(const Step& step, double at_begin, double a
     const auto [t, lowest] = boost::math::tools::brent_find_minima(value, 0.0, within.length, minimum_bits);
     sampler_.at(within, t, node);
     take(node, lowest);
+    show_extreme(within, node);
   };
   const double so_far = min_singular_.value_or(std::numeric_limits<double>::infinity());
   const double worst = singular_.open ? -singular_.score : so_far;
@@ -499,20 +575,36 @@ void SegmentChecker::check_proof(const Step& step) {
   if (!unproven_.open) open(unproven_, step.begin);
 }
 
+template <typename F>
+void SegmentChecker::with_sample(const Step& step, const Node& node, double position_residual,
+                                 double orientation_residual, F tell) {
+  const JointVector speeds = at_fold(step, node)
+                                 ? JointVector(JointVector::Constant(node.q.size(), std::nan("")))
+                                 : JointVector(node.rate * (rate_scale_ / node.fraction_rate));
+  const std::string branch = context_.arm.branches.signs(node.q);
+  const Pose tcp = context_.arm.chain.forward(node.q);
+  tell(TraceSample{context_.index, node.fraction, context_.path_length + context_.length_at(node.fraction),
+                   context_.path_time + node.fraction * context_.duration, node.q, speeds, singular_value(node.q), branch,
+                   position_residual, orientation_residual, tcp});
+}
+
 void SegmentChecker::trace(const Step& step, double position_residual, double orientation_residual) {
-  if (!observer_ || !observer_->wants_samples()) return;
+  if (!is_traced()) return;
   const auto send = [&](const Node& node) {
-    const JointVector speeds = at_fold(step, node)
-                                   ? JointVector(JointVector::Constant(node.q.size(), std::nan("")))
-                                   : JointVector(node.rate * (rate_scale_ / node.fraction_rate));
-    const std::string branch = context_.arm.branches.signs(node.q);
-    const Pose tcp = context_.arm.chain.forward(node.q);
-    observer_->sample({context_.index, node.fraction, context_.path_length + context_.length_at(node.fraction),
-                       context_.path_time + node.fraction * context_.duration, node.q, speeds, singular_value(node.q),
-                       branch, position_residual, orientation_residual, tcp});
+    with_sample(step, node, position_residual, orientation_residual,
+                [&](const TraceSample& sample) { observer_->sample(sample); });
   };
-  if (samples_ == 0) send(step.begin);
+  if (samples_ == 0) {
+    send(step.begin);
+  } else if (anew_) {
+    show_extreme(step, step.begin);
+  }
+  anew_ = false;
   send(step.end);
+}
+
+void SegmentChecker::show_extreme(const Step& step, const Node& node) {
+  if (is_traced()) with_sample(step, node, 0, 0, [&](const TraceSample& sample) { observer_->extreme(sample); });
 }
 
 void SegmentChecker::add(Finding f) { findings_.push_back(std::move(f)); }
@@ -528,6 +620,7 @@ void SegmentChecker::flip(double fraction, const Node& before, const Node& after
 
 void SegmentChecker::jump(double fraction, const JointVector& from, const JointVector& to) {
   close_all(fraction);
+  anew_ = true;
   Finding f = finding(Code::joint_jump, -1, fraction, fraction, fraction, from);
   f.from_joints = from;
   f.to_joints = to;
@@ -544,6 +637,7 @@ void SegmentChecker::lost(double fraction, const JointVector& last) {
 
 void SegmentChecker::regained(double fraction, const JointVector& /*at*/) {
   if (!lost_at_) return;
+  anew_ = true;
   const Miss miss = worst_miss(context_.arm, context_.target, *lost_at_, fraction, lost_joints_);
   Finding f = finding(Code::out_of_reach, -1, *lost_at_, fraction, miss.fraction, miss.joints);
   f.value = miss.holds_orientation || !miss.holds_position ? miss.position : miss.orientation;

@@ -6,6 +6,7 @@
 #include "pathvet/checks/check_path.hpp"
 #include "pathvet/kinematics/branches.hpp"
 #include "pathvet/tracking/follower.hpp"
+#include "point_speeds.hpp"
 #include "signal.hpp"
 
 namespace pathvet {
@@ -56,6 +57,10 @@ class SegmentChecker final : public TrackSink {
   [[nodiscard]] double proven_length() const { return proven_length_; }
   [[nodiscard]] double position_residual() const { return position_residual_; }
   [[nodiscard]] double orientation_residual() const { return orientation_residual_; }
+  [[nodiscard]] double peak_tcp_speed() const { return fastest_[static_cast<std::size_t>(points_.count() - 1)]; }
+  /// Index and speed (mm/s) of the fastest joint centre; -1 where there is none but the TCP.
+  [[nodiscard]] std::pair<int, double> fastest_point() const;
+  [[nodiscard]] std::string point_name(int point) const { return points_.name(point); }
   [[nodiscard]] const std::vector<double>& ratio_profile() const { return ratio_profile_; }
   void add(Finding finding);
 
@@ -65,6 +70,7 @@ class SegmentChecker final : public TrackSink {
   struct Watch {
     Code code = Code::joint_limit;
     int axis = -1;
+    int point = -1;    // of PointSpeeds, for arm speeds
     double sign = 1;   // of the limit's side, or of the speed
     double limit = 0;  // as reported
     double level = 0;  // beyond it the condition holds
@@ -81,10 +87,15 @@ class SegmentChecker final : public TrackSink {
   void check_axis(std::size_t index, const Step& step);
   void check_acceleration(Watch& watch, const Axis& axis, const Step& step, double hair);
   void tally(std::size_t index, const Step& step);
+  void check_points(const Step& step);
   void check_singular(const Step& step);
   void lowest_singular(const Step& step, double at_begin, double at_end);
   void check_proof(const Step& step);
   void trace(const Step& step, double position_residual, double orientation_residual);
+  void show_extreme(const Step& step, const Node& node);
+  template <typename F>
+  void with_sample(const Step& step, const Node& node, double position_residual, double orientation_residual, F tell);
+  [[nodiscard]] bool is_traced() const { return observer_ && observer_->wants_samples(); }
   template <typename F, typename D, typename S, typename E>
   void watch_step(Watch& watch, const Step& step, F value, D slope, double bound, S score, E score_slope);
   void widen(Watch& watch, const Node& node, double score);
@@ -101,6 +112,9 @@ class SegmentChecker final : public TrackSink {
   CheckObserver* observer_;
   std::vector<Watch> watches_;
   std::vector<std::pair<std::size_t, std::size_t>> watch_range_;  // of each axis
+  std::vector<Watch> point_watches_;  // one a point, if a reduced speed is asked for
+  PointSpeeds points_;
+  std::array<double, max_joints> fastest_{};  // mm/s, of each point
   Watch singular_;
   Watch unproven_;
   std::vector<AxisTally> tallies_;
@@ -110,6 +124,7 @@ class SegmentChecker final : public TrackSink {
   std::optional<double> singular_at_begin_;  // exact value at the current step's begin, if computed
   std::optional<Step> before_;               // the step before, while a lowest singular value is being bracketed
   bool falling_ = false;                     // the step before ended at the lowest singular value so far
+  bool anew_ = false;                        // the next step doesn't begin where the one before ended
   long samples_ = 0;
   double proven_length_ = 0;
   double position_residual_ = 0, orientation_residual_ = 0;

@@ -1,11 +1,49 @@
 #include "pathvet/kinematics/singular_values.hpp"
 
 #include <Eigen/SVD>
+#include <cmath>
+#include <optional>
+
+#include "pathvet/kinematics/small_inverse.hpp"
 
 namespace pathvet {
 namespace {
 
 using BoundJacobian = Eigen::Matrix<double, Eigen::Dynamic, Eigen::Dynamic, 0, 6, max_joints>;
+using Matrix66 = Eigen::Matrix<double, 6, 6>;
+
+Matrix66 symmetric_product(const Matrix66& m) { return m.transpose().lazyProduct(m); }
+
+/// The inverse loses digits by the condition number; below this its smallest singular value is left to the SVD.
+constexpr double trusted = 1e-4;
+constexpr double agreement = 1e-13;  // relative, of the two-sided bound
+constexpr int most_squarings = 11;
+
+/// The greatest eigenvalue g of W^T W lies between a Rayleigh quotient and the 2^k-th root of the Frobenius norm of the
+/// 2^k-th power; squaring the matrix brings the two together however near the next eigenvalue is.
+std::optional<double> by_squaring(const Matrix66& inverse) {
+  const Matrix66 gram = symmetric_product(inverse);
+  const double norm = gram.norm();
+  if (!(norm < 1.0 / (trusted * trusted))) return std::nullopt;
+  Matrix66 power = gram / norm;
+  double log_scale = 0;  // of power^(1 / 2^k), in terms of gram / norm
+  double exponent = 1;
+  for (int k = 0; k < most_squarings; ++k) {
+    power = symmetric_product(power);
+    const double size = power.norm();
+    power /= size;
+    exponent *= 2;
+    log_scale += std::log(size) / exponent;
+    if (k < 2) continue;
+    Eigen::Index column = 0;
+    power.diagonal().maxCoeff(&column);
+    const Vector6 x = power.col(column);
+    const double low = x.dot(gram * x) / x.squaredNorm();
+    const double high = norm * std::exp(log_scale);
+    if (high - low <= agreement * high) return 1.0 / std::sqrt(low);
+  }
+  return std::nullopt;
+}
 
 }  // namespace
 
@@ -22,12 +60,21 @@ BoundJacobian bound_jacobian(const Chain& chain, const JointVector& q, Orientati
   return out;
 }
 
+double smallest_singular_low(const Matrix66& inverse) {
+  const Matrix66 gram = symmetric_product(inverse);
+  return 1.0 / std::sqrt(gram.norm());
+}
+
 double smallest_singular_value(const Chain& chain, const JointVector& q, Orientation orientation) {
   if (orientation == Orientation::full && chain.joint_count() == 6) {
     ChainState<6> state;
     chain.evaluate<6>(q, state);
     JacobianMatrix<6> jacobian;
     chain.scaled_jacobian<6>(state, jacobian);
+    Matrix66 inverse;
+    if (small_inverse<6>(jacobian, inverse)) {
+      if (const auto value = by_squaring(inverse)) return *value;
+    }
     return Eigen::JacobiSVD<JacobianMatrix<6>>(jacobian).singularValues()[5];
   }
   const BoundJacobian jacobian = bound_jacobian(chain, q, orientation);

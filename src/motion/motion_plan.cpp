@@ -164,6 +164,9 @@ SegmentMotion MotionPlan::segment(int waypoint, const std::optional<Pose>& start
 
   const double in = waypoint >= 2 && !start ? blend(waypoint - 1).size : 0.0;
   const double away = blend(waypoint).size;
+  out.blend_in_ = in;
+  out.blend_out_ = away;
+  out.leg_duration_ = duration;
   std::array<double, SegmentMotion::most_pieces> times{};
   int count = 0;
   const auto add = [&](SegmentMotion::Piece piece, double time, double piece_length) {

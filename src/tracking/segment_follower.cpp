@@ -3,6 +3,7 @@
 #include <Eigen/SVD>
 #include <cmath>
 
+#include "pathvet/kinematics/singular_values.hpp"
 #include "pathvet/tracking/continuity.hpp"
 #include "pathvet/tracking/hermite.hpp"
 #include "pathvet/tracking/nearest.hpp"
@@ -19,6 +20,7 @@ namespace {
 constexpr double proof_share = 0.9;        // of the provable travel, so that rounding never decides
 constexpr int most_corrections = 12;
 constexpr double converged = 2e-11;        // scaled; the next correction would be its square
+constexpr double suspicious = 1e-2;        // smallest singular value; above it no pass is exact
 constexpr double largest_correction = 0.3;  // scaled; a larger one has left the branch
 
 }  // namespace
@@ -137,7 +139,11 @@ Node SegmentFollower<N>::node(const State& state) const {
   out.q = state.q;
   out.rate = task_.scale().cwiseProduct(state.rate);
   out.rate_rate = task_.scale().cwiseProduct(state.rate_rate);
-  out.singular_low = 1.0 / state.inverse_norm;
+  if constexpr (N == 6) {
+    out.singular_low = smallest_singular_low(state.inverse);
+  } else {
+    out.singular_low = 1.0 / state.inverse_norm;
+  }
   return out;
 }
 
@@ -168,9 +174,12 @@ bool SegmentFollower<N>::regular(State& state) const {
 
 template <int N>
 typename SegmentFollower<N>::Outcome SegmentFollower<N>::begin_piece(State& state, TrackSink& sink) {
-  if (exactly_singular(state)) return restart(state, sink);
   State converged_state = state;
-  if (converge(converged_state)) {
+  const bool met = converge(converged_state);
+  // 1 / inverse_norm is a lower bound of the smallest singular value.
+  const bool suspect = !met || converged_state.inverse_norm * suspicious > 1;
+  if (suspect && exactly_singular(state)) return restart(state, sink);
+  if (met) {
     if (!within_tolerance(converged_state)) return Outcome::lost;
     state = converged_state;
     if (piece_ == 0) signs_ = context_.branches.signs(state.q);
@@ -259,7 +268,6 @@ void SegmentFollower<N>::at(const Step& step, double t, Node& out) const {
 
 template <int N>
 bool SegmentFollower<N>::exactly_singular(const State& state) const {
-  constexpr double suspicious = 1e-2;  // smallest singular value; beyond it no pass is exact
   constexpr double h = 1e-6;
   TaskState<Eigen::Dynamic> general;
   general.q = state.q;

@@ -4,6 +4,8 @@
 #include <Eigen/LU>
 #include <cmath>
 
+#include "pathvet/kinematics/small_inverse.hpp"
+
 namespace pathvet {
 namespace {
 
@@ -86,7 +88,7 @@ void Task<N>::evaluate(int piece, TaskState<N>& state) const {
 template <int N>
 bool Task<N>::invert(TaskState<N>& state) const {
   if constexpr (N == 6) {
-    state.inverse = state.jacobian.inverse();
+    if (!small_inverse<6>(state.jacobian, state.inverse)) return false;
   } else {
     using Square = Eigen::Matrix<double, Eigen::Dynamic, Eigen::Dynamic, 0, max_joints, max_joints>;
     const auto& j = state.jacobian;

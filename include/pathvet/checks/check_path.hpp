@@ -1,9 +1,13 @@
 #pragma once
 
 #include "pathvet/checks/result.hpp"
+#include "pathvet/motion/segment_motion.hpp"
+#include "pathvet/tracking/step.hpp"
 #include "pathvet/xml/faults.hpp"
 
 namespace pathvet {
+
+class Chain;
 
 /// One sample of a path as it is checked. Internal units; length and time count from the path's start.
 struct TraceSample {
@@ -20,6 +24,14 @@ struct TraceSample {
   const Pose& tcp;                  ///< of the TCP in the world
 };
 
+/// A segment that is about to be checked; `chain` ends at the segment's TCP.
+struct SegmentStart {
+  int segment = 0;                        ///< counts from 1
+  const SegmentMotion* motion = nullptr;  ///< null: a joint move
+  const Chain& chain;
+  double duration = 0;  ///< s
+};
+
 /// Watches a check as it goes. Called from one thread, in the order of the path.
 class CheckObserver {
  public:
@@ -27,6 +39,14 @@ class CheckObserver {
   /// Whether sample() wants to be called; without it the exact singular value of every sample is not computed.
   [[nodiscard]] virtual bool wants_samples() const { return false; }
   virtual void sample(const TraceSample& /*sample*/) {}
+  /// Places between the samples that the report's figures come from: where a joint's position or speed or the smallest
+  /// singular value is extreme on the exact curve, and where the curve begins anew after a gap or a jump. They come
+  /// before the sample at the end of their step, in no order; residuals are not given. Called if wants_samples().
+  virtual void extreme(const TraceSample& /*sample*/) {}
+  /// Every segment as it begins, then its steps: the pieces of the joints' exact curve, between whose ends the sampler
+  /// gives any place. Both are good for the call alone.
+  virtual void begin_segment(const SegmentStart& /*start*/) {}
+  virtual void step(int /*segment*/, const Step& /*step*/, const StepSampler& /*sampler*/) {}
   /// Share of the path's segments done, 0 to 1. Returns false to stop the check.
   virtual bool progress(double /*share*/) { return true; }
 };

@@ -38,7 +38,8 @@ struct Configurations {
 /// the tool's z axis; else up to 64 configurations by damped least squares from seeds inside the limits.
 ///
 /// Other arms with prismatic joints, and arms whose Jacobian never has full rank: damped least squares from
-/// evenly spread seeds until 192 in a row bring nothing new, at most 64 configurations.
+/// evenly spread seeds until 192 in a row bring nothing new, or 64 configurations are known; likewise where a
+/// singular configuration leaves the elimination's result in doubt.
 ///
 /// Where a configuration is singular and stands for a continuum (a straight wrist, the wrist on axis 1) one
 /// value of the free joint represents it, zero if that is in reach; two that meet in a fold are given as one.

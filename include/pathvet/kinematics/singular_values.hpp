@@ -9,8 +9,14 @@ namespace pathvet {
 [[nodiscard]] Eigen::Matrix<double, Eigen::Dynamic, Eigen::Dynamic, 0, 6, max_joints> bound_jacobian(
     const Chain& chain, const JointVector& q, Orientation orientation);
 
-/// The smallest of the min(rows, joints) singular values of bound_jacobian, by an SVD: exact to rounding, at 0 too.
+/// The smallest of the min(rows, joints) singular values of bound_jacobian, exact to rounding (about 1e-15 of the largest,
+/// so at 0 too): by repeated squaring of (J J^T)^-1 with a two-sided bound for six joints away from singularities, by an
+/// SVD otherwise.
 [[nodiscard]] double smallest_singular_value(const Chain& chain, const JointVector& q, Orientation orientation);
+
+/// Lower bound of the smallest singular value from the matrix' inverse W: (sum of sigma^-4)^(-1/4), that is
+/// ||W^T W||_F^(-1/2); at most a factor 6^(1/4) below it, and close where the second smallest is well apart.
+[[nodiscard]] double smallest_singular_low(const Eigen::Matrix<double, 6, 6>& inverse);
 
 /// The smallest singular value with its vectors.
 struct SingularDirection {

@@ -45,6 +45,14 @@ class SegmentMotion {
   [[nodiscard]] double duration() const { return duration_; }  ///< s; 0 where nothing moves
   [[nodiscard]] bool on_the_spot() const { return on_the_spot_; }
 
+  // What re-timing needs to know of how the motion is made up.
+  [[nodiscard]] const Leg& leg() const { return leg_; }  ///< whole, without blends; in the world, or the moving frame
+  [[nodiscard]] bool is_corner(int piece) const { return pieces_[static_cast<std::size_t>(piece)].is_corner; }
+  [[nodiscard]] double blend_in() const { return blend_in_; }    ///< mm, at its begin; 0: none
+  [[nodiscard]] double blend_out() const { return blend_out_; }  ///< mm, at its end
+  [[nodiscard]] double leg_duration() const { return leg_duration_; }  ///< s, of the whole leg at programmed speed
+  [[nodiscard]] bool has_moving_frame() const { return moving_frame_ != nullptr; }
+
  private:
   friend class MotionPlan;
   struct Piece {
@@ -63,6 +71,7 @@ class SegmentMotion {
   std::array<Piece, most_pieces> pieces_{};
   int piece_count_ = 1;
   double length_ = 0, turn_ = 0, duration_ = 0;
+  double blend_in_ = 0, blend_out_ = 0, leg_duration_ = 0;
   bool on_the_spot_ = false;
   Pose frame_;
   std::shared_ptr<const MovingFrame> moving_frame_;
