@@ -1,0 +1,25 @@
+#pragma once
+
+#include <chrono>
+
+namespace pathvet::commands {
+
+/// A bar on standard error, if that is a terminal and the work takes long enough to be waited for.
+class ProgressBar {
+ public:
+  explicit ProgressBar(bool wanted);
+  ~ProgressBar();
+  ProgressBar(const ProgressBar&) = delete;
+  ProgressBar& operator=(const ProgressBar&) = delete;
+
+  void show(double share);
+
+ private:
+  using Clock = std::chrono::steady_clock;
+
+  bool enabled_;
+  bool drawn_ = false;
+  Clock::time_point next_;
+};
+
+}  // namespace pathvet::commands
