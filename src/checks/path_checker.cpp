@@ -143,6 +143,10 @@ std::vector<JointVector> PathChecker::starts() {
   return inside.empty() ? found : inside;
 }
 
+bool PathChecker::starts_complete() {
+  return context(0).finder.find(plan_.programmed(0), waypoint(0).orientation).complete;
+}
+
 /// The target of a joint move (contract, section 4).
 std::optional<JointVector> PathChecker::joint_target(int index, const JointVector& from) {
   const Waypoint& w = waypoint(index);

@@ -31,6 +31,8 @@ class PathChecker {
   /// Start configurations to choose from where the path gives none: all inside the limits, whole turns included; if
   /// there are none, all.
   [[nodiscard]] std::vector<JointVector> starts();
+  /// Whether starts() holds every configuration of the start pose.
+  [[nodiscard]] bool starts_complete();
   /// The start that the path gives (its joints, made exact where a pose stands beside them).
   [[nodiscard]] std::optional<JointVector> taught_start();
   [[nodiscard]] PathResult run(const JointVector& start, bool reached, bool taught);
