@@ -40,6 +40,8 @@ struct Axis {
 
 /// A limit is broken when it is exceeded by more than this share of its size; touching is allowed.
 inline constexpr double limit_tolerance = 1e-9;
-[[nodiscard]] inline double beyond(double limit) { return limit_tolerance * std::abs(limit); }
+[[nodiscard]] inline double beyond(double limit) {
+  return limit_tolerance * std::abs(limit);
+}
 
 }  // namespace pathvet

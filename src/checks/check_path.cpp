@@ -13,7 +13,8 @@ double limit_margin_share(const PathResult& result) {
   double least = 1;
   for (const AxisResult& axis : result.axes) {
     if (!axis.lower) continue;
-    least = std::min(least, std::min(axis.min - *axis.lower, *axis.upper - axis.max) / (*axis.upper - *axis.lower));
+    least = std::min(least,
+                     std::min(axis.min - *axis.lower, *axis.upper - axis.max) / (*axis.upper - *axis.lower));
   }
   return least;
 }

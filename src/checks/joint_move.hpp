@@ -11,15 +11,17 @@ namespace pathvet {
 /// A joint move: all joints go evenly from one configuration to another.
 class JointMove final : public StepSampler {
  public:
-  JointMove(const Arm& arm, const Chain& chain, const JointVector& from, const JointVector& to, double joint_rate);
+  JointMove(const Arm& arm, const Chain& chain, const JointVector& from, const JointVector& to,
+            double joint_rate);
 
-  [[nodiscard]] double duration() const { return duration_; }  ///< s
+  [[nodiscard]] double duration() const { return duration_; }     ///< s
   [[nodiscard]] double length() const { return length_[table]; }  ///< mm, of the TCP's way
   [[nodiscard]] double turn() const { return turn_; }             ///< rad
   [[nodiscard]] double length_at(double fraction) const;
   [[nodiscard]] JointVector joints(double fraction) const { return from_ + fraction * change_; }
 
-  /// Sends the steps to a sink: samples so near that neither the TCP nor its orientation moves further than asked.
+  /// Sends the steps to a sink: samples so near that neither the TCP nor its orientation moves further than
+  /// asked.
   void run(const FollowSettings& settings, TrackSink& sink) const;
   void at(const Step& step, double t, Node& out) const override;
 

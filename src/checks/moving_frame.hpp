@@ -12,7 +12,8 @@ namespace pathvet {
 /// A frame on a positioner whose joints go evenly from one waypoint's values to the next one's.
 class CarriedFrame final : public MovingFrame {
  public:
-  CarriedFrame(const Positioner& positioner, const Pose& placement, const JointVector& from, const JointVector& to);
+  CarriedFrame(const Positioner& positioner, const Pose& placement, const JointVector& from,
+               const JointVector& to);
   void at(double fraction, CurvePoint& out) const override;
 
  private:

@@ -11,17 +11,17 @@ namespace pathvet {
 namespace {
 
 /// How far the joints beside a pose may miss it (contract, section 3).
-constexpr double taught_position = 1.0;                         // mm
+constexpr double taught_position = 1.0;  // mm
 constexpr double taught_orientation = 0.5 * radians_per_degree;
 /// How far an arrival may differ from the taught configuration.
 constexpr double mismatch_angle = 0.5 * radians_per_degree;
 constexpr double mismatch_length = 0.5;  // mm
 /// A pose is met again, and the configuration is the same, within these.
-constexpr double same_position = 1e-6;      // mm
-constexpr double same_orientation = 1e-8;   // rad
-constexpr double same_joints = 1e-6;        // rad or mm
-constexpr std::size_t most_visits = 1000;   // that are looked back at
-constexpr double half_turn = 1e-9;       // rad; a turn nearer to pi has no short way
+constexpr double same_position = 1e-6;     // mm
+constexpr double same_orientation = 1e-8;  // rad
+constexpr double same_joints = 1e-6;       // rad or mm
+constexpr std::size_t most_visits = 1000;  // that are looked back at
+constexpr double half_turn = 1e-9;         // rad; a turn nearer to pi has no short way
 
 Pose tool_of(const Cell& cell, std::optional<int> tool) {
   return tool ? cell.tools[static_cast<std::size_t>(*tool)].placement : Pose{};
@@ -31,7 +31,9 @@ int bound_rows(Orientation orientation) {
   return orientation == Orientation::full ? 6 : orientation == Orientation::axis ? 5 : 3;
 }
 
-bool binds(Orientation orientation) { return orientation == Orientation::full; }
+bool binds(Orientation orientation) {
+  return orientation == Orientation::full;
+}
 
 /// The pose's miss at given joints, as far as the orientation binds.
 std::pair<double, double> miss(const Pose& wanted, const Pose& now, Orientation orientation) {
@@ -53,7 +55,8 @@ ToolContext::ToolContext(const Arm& the_arm, const Pose& tool, Orientation orien
       branches(the_arm, orientation, tool),
       arm{the_arm, chain, finder, branches, orientation} {}
 
-PathChecker::PathChecker(const Path& path, const Cell& cell, const CheckOptions& options, CheckObserver* observer)
+PathChecker::PathChecker(const Path& path, const Cell& cell, const CheckOptions& options,
+                         CheckObserver* observer)
     : path_(path),
       cell_(cell),
       options_(options),
@@ -61,7 +64,9 @@ PathChecker::PathChecker(const Path& path, const Cell& cell, const CheckOptions&
       axes_(axes_of(cell.arm)),
       positioner_axes_(positioner_axes(cell)),
       plan_(path, cell,
-            {[this](int i) { return context(waypoint(i).tool, Orientation::full).chain.forward(*waypoint(i).joints); },
+            {[this](int i) {
+               return context(waypoint(i).tool, Orientation::full).chain.forward(*waypoint(i).joints);
+             },
              [this](int i) -> std::shared_ptr<const MovingFrame> {
                const Waypoint& w = waypoint(i);
                if (!w.frame) return nullptr;
@@ -79,7 +84,9 @@ const ToolContext& PathChecker::context(std::optional<int> tool, Orientation ori
   return *found;
 }
 
-const ToolContext& PathChecker::context(int index) { return context(waypoint(index).tool, waypoint(index).orientation); }
+const ToolContext& PathChecker::context(int index) {
+  return context(waypoint(index).tool, waypoint(index).orientation);
+}
 
 /// The solution of a waypoint's pose that its joints stand for: the nearest, turned towards them.
 std::optional<JointVector> PathChecker::exact_at(int index, const JointVector& near) {
@@ -88,9 +95,10 @@ std::optional<JointVector> PathChecker::exact_at(int index, const JointVector& n
   for (JointVector& q : found) q = turned_towards(cell_.arm, q, near);
   const auto i = nearest(cell_.arm, near, found);
   if (!i) return std::nullopt;
-  // At a singular pose the solutions form a continuum, of which the finder names one: the joints themselves are
-  // another, if they meet the pose.
-  const auto [position, orientation] = miss(plan_.programmed(index), c.chain.forward(near), waypoint(index).orientation);
+  // At a singular pose the solutions form a continuum, of which the finder names one: the joints themselves
+  // are another, if they meet the pose.
+  const auto [position, orientation] =
+      miss(plan_.programmed(index), c.chain.forward(near), waypoint(index).orientation);
   if (position < position_tolerance && orientation < orientation_tolerance &&
       (found[*i] - near).cwiseAbs().maxCoeff() > 0.1)
     return near;
@@ -99,7 +107,9 @@ std::optional<JointVector> PathChecker::exact_at(int index, const JointVector& n
 
 std::vector<Fault> PathChecker::faults() {
   std::vector<Fault> out;
-  const auto fault = [&](const Waypoint& w, const std::string& what) { out.push_back({path_.file, w.place, what}); };
+  const auto fault = [&](const Waypoint& w, const std::string& what) {
+    out.push_back({path_.file, w.place, what});
+  };
   for (int i = 0; i < static_cast<int>(path_.waypoints.size()); ++i) {
     const Waypoint& w = waypoint(i);
     const bool chooses = w.joints && w.pose && (w.move == Move::start || w.move == Move::joint);
@@ -107,8 +117,8 @@ std::vector<Fault> PathChecker::faults() {
       const auto [position, orientation] =
           miss(plan_.programmed(i), context(i).chain.forward(*w.joints), w.orientation);
       if (position > taught_position || orientation > taught_orientation) {
-        fault(w, "the joints of waypoint \"" + w.id + "\" miss its pose by " + std::to_string(position) + " mm and " +
-                     std::to_string(orientation * degrees_per_radian) +
+        fault(w, "the joints of waypoint \"" + w.id + "\" miss its pose by " + std::to_string(position) +
+                     " mm and " + std::to_string(orientation * degrees_per_radian) +
                      " degrees; expected joints that meet the pose within 1 mm and 0.5 degrees");
       }
     }
@@ -214,7 +224,8 @@ PathResult PathChecker::run(const JointVector& start, bool reached, bool taught)
     return std::tie(a.segment, a.begin, a.code, a.axis) < std::tie(b.segment, b.begin, b.code, b.axis);
   });
   for (std::size_t i = 0; i < result.findings.size(); ++i)
-    result.segments[static_cast<std::size_t>(result.findings[i].segment - 1)].findings.push_back(static_cast<int>(i));
+    result.segments[static_cast<std::size_t>(result.findings[i].segment - 1)].findings.push_back(
+        static_cast<int>(i));
   return result;
 }
 
@@ -255,7 +266,8 @@ PathChecker::Arrival PathChecker::joint_segment(int index, const Arrival& from, 
   if (!target) {
     checker.lost(0.0, from.q);
     checker.finish();
-    // A joint move has no way of its own to a pose out of reach: the whole of it is flagged, worst at its end.
+    // A joint move has no way of its own to a pose out of reach: the whole of it is flagged, worst at its
+    // end.
     for (Finding& f : checker.findings()) {
       if (f.code != Code::out_of_reach) continue;
       f.peak = 1;
@@ -273,7 +285,8 @@ PathChecker::Arrival PathChecker::cartesian_segment(int index, const Arrival& fr
   const ToolContext& c = context(index);
   // After a waypoint that left part of the orientation free the motion starts where the tool really is.
   std::optional<Pose> start;
-  if (from.reached && !binds(waypoint(index - 1).orientation) && waypoint(index - 1).orientation != w.orientation)
+  if (from.reached && !binds(waypoint(index - 1).orientation) &&
+      waypoint(index - 1).orientation != w.orientation)
     start = c.chain.forward(from.q);
   const SegmentMotion motion = plan_.segment(index, start);
   SegmentResult segment;
@@ -359,8 +372,9 @@ void PathChecker::taught_mismatch(int index, const JointVector& arrived, const S
   f.begin_time = f.end_time = f.peak_time = context.duration;
   f.value = arrived[worst] - taught[worst];
   f.limit = taught[worst];
-  f.quantity = cell_.arm.joints[static_cast<std::size_t>(worst)].type == JointType::revolute ? Quantity::angle
-                                                                                              : Quantity::length;
+  f.quantity = cell_.arm.joints[static_cast<std::size_t>(worst)].type == JointType::revolute
+                   ? Quantity::angle
+                   : Quantity::length;
   f.joints = arrived;
   f.from_joints = arrived;
   f.to_joints = taught;
@@ -368,8 +382,9 @@ void PathChecker::taught_mismatch(int index, const JointVector& arrived, const S
   checker.add(std::move(f));
 }
 
-void PathChecker::absorb(int index, SegmentResult segment, SegmentChecker& checker, const SegmentContext& context,
-                         const JointVector& begin, const JointVector& end, PathResult& result) {
+void PathChecker::absorb(int index, SegmentResult segment, SegmentChecker& checker,
+                         const SegmentContext& context, const JointVector& begin, const JointVector& end,
+                         PathResult& result) {
   const Waypoint& w = waypoint(index);
   segment.index = index;
   segment.from = waypoint(index - 1).id;
@@ -412,7 +427,8 @@ void PathChecker::absorb(int index, SegmentResult segment, SegmentChecker& check
       segment.peak_axis = static_cast<int>(i);
     }
     if (axis.lower) {
-      // Angles and lengths are compared by the margins that the contract gives them by default: 3 degrees to 10 mm.
+      // Angles and lengths are compared by the margins that the contract gives them by default: 3 degrees to
+      // 10 mm.
       const double unit = axis.type == JointType::revolute ? 3 * radians_per_degree : 10.0;
       const double room = std::min(t.min - *axis.lower, *axis.upper - t.max);
       if (room / unit < least) {
@@ -426,7 +442,7 @@ void PathChecker::absorb(int index, SegmentResult segment, SegmentChecker& check
   for (const Finding& f : checker.findings()) unbounded = unbounded || f.unbounded;
   if (unbounded) segment.peak_ratio = std::numeric_limits<double>::infinity();
   if (!unbounded && segment.peak_ratio > 0 && segment.duration > 0) {
-    const double programmed = w.move == Move::joint        ? w.joint_rate
+    const double programmed = w.move == Move::joint      ? w.joint_rate
                               : segment.turn_on_the_spot ? segment.turn / segment.duration
                                                          : segment.length / segment.duration;
     segment.highest_speed = programmed / segment.peak_ratio;

@@ -11,7 +11,8 @@
 
 namespace pathvet {
 
-/// An arm with one of the cell's tools and what of the orientation binds: the analyses that all segments with them share.
+/// An arm with one of the cell's tools and what of the orientation binds: the analyses that all segments with
+/// them share.
 struct ToolContext {
   ToolContext(const Arm& arm, const Pose& tool, Orientation orientation);
 
@@ -28,8 +29,8 @@ class PathChecker {
 
   /// What only the forward map can tell is wrong with the path.
   [[nodiscard]] std::vector<Fault> faults();
-  /// Start configurations to choose from where the path gives none: all inside the limits, whole turns included; if
-  /// there are none, all.
+  /// Start configurations to choose from where the path gives none: all inside the limits, whole turns
+  /// included; if there are none, all.
   [[nodiscard]] std::vector<JointVector> starts();
   /// Whether starts() holds every configuration of the start pose.
   [[nodiscard]] bool starts_complete();
@@ -45,13 +46,16 @@ class PathChecker {
 
   [[nodiscard]] const ToolContext& context(int waypoint);
   [[nodiscard]] const ToolContext& context(std::optional<int> tool, Orientation orientation);
-  [[nodiscard]] const Waypoint& waypoint(int index) const { return path_.waypoints[static_cast<std::size_t>(index)]; }
+  [[nodiscard]] const Waypoint& waypoint(int index) const {
+    return path_.waypoints[static_cast<std::size_t>(index)];
+  }
   Arrival joint_segment(int index, const Arrival& from, PathResult& result);
   Arrival cartesian_segment(int index, const Arrival& from, PathResult& result);
   [[nodiscard]] std::optional<JointVector> joint_target(int index, const JointVector& from);
   [[nodiscard]] std::optional<JointVector> exact_at(int index, const JointVector& near);
   [[nodiscard]] std::optional<JointVector> drift(int index, const JointVector& arrived);
-  void taught_mismatch(int index, const JointVector& arrived, const SegmentContext& context, SegmentChecker& checker);
+  void taught_mismatch(int index, const JointVector& arrived, const SegmentContext& context,
+                       SegmentChecker& checker);
   void absorb(int index, SegmentResult segment, SegmentChecker& checker, const SegmentContext& context,
               const JointVector& begin, const JointVector& end, PathResult& result);
   [[nodiscard]] Pose frame_at_arrival(int index) const;

@@ -25,7 +25,8 @@ void walk(const Chain& chain, const Node& node, Take take) {
       along = node.rate[i] * axis;
       acceleration += node.rate_rate[i] * axis + 2 * spin.cross(along);
     }
-    const Vector3 ray = i + 1 < n ? Vector3(state.levers.col(i) - state.levers.col(i + 1)) : Vector3(state.levers.col(i));
+    const Vector3 ray =
+        i + 1 < n ? Vector3(state.levers.col(i) - state.levers.col(i + 1)) : Vector3(state.levers.col(i));
     velocity += along + spin.cross(ray);
     acceleration += spin_rate.cross(ray) + spin.cross(spin.cross(ray));
     take(i, velocity, acceleration);

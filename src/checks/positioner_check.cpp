@@ -30,18 +30,21 @@ JointVector positioner_joints(const Waypoint& waypoint) {
 }
 
 void check_positioners(SegmentChecker& checker, const SegmentContext& context, const std::vector<Axis>& axes,
-                       int axis_offset, const JointVector& from, const JointVector& to, const JointVector& arm_from,
-                       const JointVector& arm_to, std::vector<AxisTally>& tallies) {
+                       int axis_offset, const JointVector& from, const JointVector& to,
+                       const JointVector& arm_from, const JointVector& arm_to,
+                       std::vector<AxisTally>& tallies) {
   tallies.assign(axes.size(), {});
   for (std::size_t i = 0; i < axes.size(); ++i) {
     const Axis& axis = axes[i];
     const double a = axis.of(from);
     const double b = axis.of(to);
     const double speed = context.duration > 0 ? (b - a) / context.duration : 0.0;
-    tallies[i] = {std::min(a, b), std::max(a, b), speed, axis.speed ? std::abs(speed) / *axis.speed : 0.0,
+    tallies[i] = {std::min(a, b),  std::max(a, b),
+                  speed,           axis.speed ? std::abs(speed) / *axis.speed : 0.0,
                   std::abs(b - a), true};
     const bool angular = axis.type == JointType::revolute;
-    const auto flag = [&](Code code, double begin, double end, double peak, double value, double limit, Quantity quantity) {
+    const auto flag = [&](Code code, double begin, double end, double peak, double value, double limit,
+                          Quantity quantity) {
       Finding f;
       f.code = code;
       f.segment = context.index;
@@ -64,7 +67,8 @@ void check_positioners(SegmentChecker& checker, const SegmentContext& context, c
       checker.add(std::move(f));
     };
     if (axis.lower) {
-      const double margin = angular ? context.options.limit_margin_angle : context.options.limit_margin_length;
+      const double margin =
+          angular ? context.options.limit_margin_angle : context.options.limit_margin_length;
       for (const double sign : {1.0, -1.0}) {
         const double limit = sign > 0 ? *axis.upper : *axis.lower;
         const auto stretch = [&](Code code, double level, double least) {
@@ -79,7 +83,8 @@ void check_positioners(SegmentChecker& checker, const SegmentContext& context, c
           if (code == Code::joint_limit) {
             flag(code, begin, end, peak, worst, limit, angular ? Quantity::angle : Quantity::length);
           } else {
-            flag(code, begin, end, peak, sign * (limit - worst), margin, angular ? Quantity::angle : Quantity::length);
+            flag(code, begin, end, peak, sign * (limit - worst), margin,
+                 angular ? Quantity::angle : Quantity::length);
           }
           return true;
         };
@@ -92,7 +97,8 @@ void check_positioners(SegmentChecker& checker, const SegmentContext& context, c
       const Quantity quantity = angular ? Quantity::angular_speed : Quantity::linear_speed;
       if (std::abs(speed) > *axis.speed + beyond(*axis.speed)) {
         flag(Code::joint_speed, 0, 1, 0, speed, signed_limit, quantity);
-      } else if (context.cartesian && std::abs(speed) > context.options.speed_margin * *axis.speed * (1 + limit_tolerance)) {
+      } else if (context.cartesian &&
+                 std::abs(speed) > context.options.speed_margin * *axis.speed * (1 + limit_tolerance)) {
         flag(Code::speed_margin, 0, 1, 0, speed, signed_limit, quantity);
       }
     }

@@ -26,7 +26,8 @@ StartTrial summary(const PathResult& result) {
   out.limit_margin_share = std::numeric_limits<double>::infinity();
   for (const AxisResult& axis : result.axes) {
     if (!axis.lower) continue;
-    const double share = std::min(axis.min - *axis.lower, *axis.upper - axis.max) / (*axis.upper - *axis.lower);
+    const double share =
+        std::min(axis.min - *axis.lower, *axis.upper - axis.max) / (*axis.upper - *axis.lower);
     if (share >= out.limit_margin_share) continue;
     out.limit_margin_share = share;
     out.limit_margin_joint = axis.name;

@@ -12,7 +12,7 @@ namespace {
 /// Weight of what must be held against what may be missed: the held part then slips by about miss / weight^2.
 constexpr double hold = 1e4;
 constexpr int most_iterations = 300;
-constexpr int grid = 24;            // of the worst miss along a stretch
+constexpr int grid = 24;  // of the worst miss along a stretch
 constexpr double held_orientation = 1e-3 * radians_per_degree;
 constexpr double held_position = 1e-2;  // mm
 
@@ -40,7 +40,8 @@ JointVector minimise(const ArmContext& context, const Pose& target, JointVector 
                      double orientation_weight) {
   const int n = context.chain.joint_count();
   JointVector scale(n);
-  for (int i = 0; i < n; ++i) scale[i] = context.chain.is_revolute(i) ? 1.0 : context.chain.characteristic_length();
+  for (int i = 0; i < n; ++i)
+    scale[i] = context.chain.is_revolute(i) ? 1.0 : context.chain.characteristic_length();
   const auto weighted = [&](const JointVector& at) {
     Rows e = pose_error(context, target, context.chain.forward(at));
     e.head(3) *= position_weight;

@@ -13,8 +13,8 @@ namespace pathvet {
 namespace {
 
 constexpr int profile_bins = 48;
-/// Arc steps: a joint that moves less than this share of the arc does not count as moving (rounding), and a rate of the
-/// fraction below `stalled` of it is a fold: the joint speeds grow without bound there.
+/// Arc steps: a joint that moves less than this share of the arc does not count as moving (rounding), and a
+/// rate of the fraction below `stalled` of it is a fold: the joint speeds grow without bound there.
 constexpr double still = 1e-9;
 constexpr double stalled = 1e-7;
 constexpr int singular_halvings = 7;
@@ -51,8 +51,8 @@ class JerkOfStep {
   [[nodiscard]] T mix(double t, const T& change, const T& d0, const T& d1, const T& s0, const T& s1) const {
     const double h = step_.length;
     const double u = t / h;
-    return ((60 - 360 * u + 360 * u * u) * change + h * ((-36 + 192 * u - 180 * u * u) * d0 +
-                                                         (-24 + 168 * u - 180 * u * u) * d1) +
+    return ((60 - 360 * u + 360 * u * u) * change +
+            h * ((-36 + 192 * u - 180 * u * u) * d0 + (-24 + 168 * u - 180 * u * u) * d1) +
             h * h * ((-9 + 36 * u - 30 * u * u) * s0 + (3 - 24 * u + 30 * u * u) * s1)) /
            (h * h * h);
   }
@@ -65,7 +65,8 @@ bool at_fold(const Step& step, const Node& node) {
 
 }  // namespace
 
-SegmentChecker::SegmentChecker(const SegmentContext& context, const StepSampler& sampler, CheckObserver* observer)
+SegmentChecker::SegmentChecker(const SegmentContext& context, const StepSampler& sampler,
+                               CheckObserver* observer)
     : context_(context),
       sampler_(sampler),
       observer_(observer),
@@ -97,7 +98,8 @@ SegmentChecker::SegmentChecker(const SegmentContext& context, const StepSampler&
     if (axis.speed && context.cartesian) {
       for (const double sign : {1.0, -1.0}) {
         add_watch(Code::joint_speed, sign, sign * *axis.speed, *axis.speed + beyond(*axis.speed), 0);
-        add_watch(Code::speed_margin, sign, sign * *axis.speed, o.speed_margin * *axis.speed * (1 + limit_tolerance), 0);
+        add_watch(Code::speed_margin, sign, sign * *axis.speed,
+                  o.speed_margin * *axis.speed * (1 + limit_tolerance), 0);
       }
     }
     if (axis.acceleration && context.cartesian) {
@@ -142,11 +144,12 @@ double SegmentChecker::third_bound(const Axis& axis, const Step& step) const {
   if (step.kind == Step::Kind::fraction)
     return axis.reach(context_.arm.chain.characteristic_length()) * step.third_bound;
   if (step.kind == Step::Kind::interpolated) return step.third_bound;
-  // The proven bound is too coarse for the long steps by arc length. Inside a proven ball the curve is analytic well
-  // beyond the step, so four times the mean third derivative stands in for its greatest.
+  // The proven bound is too coarse for the long steps by arc length. Inside a proven ball the curve is
+  // analytic well beyond the step, so four times the mean third derivative stands in for its greatest.
   double change = std::abs(axis.of(JointVector(step.end.rate_rate - step.begin.rate_rate)));
-  if (axis.speed) change += *axis.speed * std::abs(step.end.fraction_rate_rate - step.begin.fraction_rate_rate) *
-                            context_.duration;
+  if (axis.speed)
+    change += *axis.speed * std::abs(step.end.fraction_rate_rate - step.begin.fraction_rate_rate) *
+              context_.duration;
   return 4 * change / step.length + 1e-9;
 }
 
@@ -168,7 +171,8 @@ void SegmentChecker::tally(std::size_t index, const Step& step) {
   const Spot begin{0, step.begin};
   if (rate_a * rate_b < 0 && std::abs(rate_a - rate_b) > slope_noise * std::abs(b)) {
     const Spot end{step.length, step.end};
-    const Spot turn = root_between(sampler_, step, begin, end, [&](const Spot& s) { return axis.of(s.node.rate); });
+    const Spot turn =
+        root_between(sampler_, step, begin, end, [&](const Spot& s) { return axis.of(s.node.rate); });
     show_extreme(step, turn.node);
     const double q = axis.of(turn.node.q);
     t.min = std::min(t.min, q);
@@ -190,16 +194,18 @@ void SegmentChecker::tally(std::size_t index, const Step& step) {
   };
   take(step.begin);
   take(step.end);
-  // d(rate / fraction_rate)/dt has the sign of this; a peak between the nodes is one where |speed| rises, then falls.
+  // d(rate / fraction_rate)/dt has the sign of this; a peak between the nodes is one where |speed| rises,
+  // then falls.
   const auto slope = [&](const Spot& s) { return speed_slope(axis, s.node); };
   const double side = rate_a + rate_b > 0 ? 1.0 : -1.0;
   const double slope_a = side * speed_slope(axis, step.begin);
   const double slope_b = side * speed_slope(axis, step.end);
   if (slope_a > 0 && slope_b < 0 && !at_fold(step, step.begin) && !at_fold(step, step.end)) {
-    const double rise = std::max(std::abs(rate_a / step.begin.fraction_rate), std::abs(rate_b / step.end.fraction_rate)) +
-                        std::max(slope_a / std::pow(step.begin.fraction_rate, 2),
-                                 -slope_b / std::pow(step.end.fraction_rate, 2)) *
-                            step.length;
+    const double rise =
+        std::max(std::abs(rate_a / step.begin.fraction_rate), std::abs(rate_b / step.end.fraction_rate)) +
+        std::max(slope_a / std::pow(step.begin.fraction_rate, 2),
+                 -slope_b / std::pow(step.end.fraction_rate, 2)) *
+            step.length;
     if (rise * rate_scale_ / *axis.speed > t.peak_ratio) {
       const Spot end{step.length, step.end};
       Spot top;
@@ -258,16 +264,17 @@ void SegmentChecker::check_axis(std::size_t index, const Step& step) {
   }
 }
 
-/// Acceleration is (rate / fraction_rate)' / fraction_rate. Its derivative takes the third derivatives from the quintic
-/// through the step's ends: they steer the search alone, every value reported is exact.
+/// Acceleration is (rate / fraction_rate)' / fraction_rate. Its derivative takes the third derivatives from
+/// the quintic through the step's ends: they steer the search alone, every value reported is exact.
 void SegmentChecker::check_acceleration(Watch& watch, const Axis& axis, const Step& step, double hair) {
   const double square = rate_scale_ * rate_scale_;
   const JerkOfStep jerk(step);
   const double jerk_a = axis.of(jerk.joints(0));
   const double jerk_b = axis.of(jerk.joints(step.length));
   const double fourth = 4 * std::abs(jerk_b - jerk_a) / step.length + 1e-9;
-  const double most = std::max(std::abs(axis.of(step.begin.rate_rate)), std::abs(axis.of(step.end.rate_rate))) +
-                      step.length * (std::abs(jerk_a) + std::abs(jerk_b) + step.length * fourth);
+  const double most =
+      std::max(std::abs(axis.of(step.begin.rate_rate)), std::abs(axis.of(step.end.rate_rate))) +
+      step.length * (std::abs(jerk_a) + std::abs(jerk_b) + step.length * fourth);
   if (step.kind == Step::Kind::fraction && !watch.open && most * square < watch.level) return;
   const auto numerator = [&](const Spot& s) { return watch.sign * speed_slope(axis, s.node) * square; };
   const auto numerator_slope = [&](const Spot& s) {
@@ -285,7 +292,8 @@ void SegmentChecker::check_acceleration(Watch& watch, const Axis& axis, const St
       [&](const Spot& s) { return numerator_slope(s) * cube(s) - numerator(s) * cube_slope(s); });
 }
 
-/// Speeds of the joint centres and the TCP: their greatest for the report, and stretches above a reduced speed.
+/// Speeds of the joint centres and the TCP: their greatest for the report, and stretches above a reduced
+/// speed.
 void SegmentChecker::check_points(const Step& step) {
   std::array<double, max_joints> at_end;
   points_.speeds(step.end, at_end);
@@ -304,16 +312,20 @@ void SegmentChecker::check_points(const Step& step) {
   }
   take(step.end, at_end);
   for (Watch& watch : point_watches_) {
-    const auto speed = [&](const Spot& s) { return points_.at(s.node)[static_cast<std::size_t>(watch.point)]; };
+    const auto speed = [&](const Spot& s) {
+      return points_.at(s.node)[static_cast<std::size_t>(watch.point)];
+    };
     const auto score = [&](const Spot& s) { return speed(s).value / s.node.fraction_rate * rate_scale_; };
     const auto slope = [&](const Spot& s) {
       return speed(s).slope * rate_scale_ - watch.level * s.node.fraction_rate_rate;
     };
     // No proven bound: four times the mean second derivative over the step stands in for its greatest.
     const double second =
-        4 * std::abs(slope({step.length, step.end}) - slope({0, step.begin})) / step.length + 1e-9 * watch.level;
+        4 * std::abs(slope({step.length, step.end}) - slope({0, step.begin})) / step.length +
+        1e-9 * watch.level;
     watch_step(
-        watch, step, [&](const Spot& s) { return speed(s).value * rate_scale_ - watch.level * s.node.fraction_rate; },
+        watch, step,
+        [&](const Spot& s) { return speed(s).value * rate_scale_ - watch.level * s.node.fraction_rate; },
         slope, second, score,
         [&](const Spot& s) {
           const PointSpeeds::Speed at = speed(s);
@@ -332,7 +344,8 @@ std::pair<int, double> SegmentChecker::fastest_point() const {
 }
 
 template <typename F, typename D, typename S, typename E>
-void SegmentChecker::watch_step(Watch& watch, const Step& step, F value, D slope, double bound, S score, E score_slope) {
+void SegmentChecker::watch_step(Watch& watch, const Step& step, F value, D slope, double bound, S score,
+                                E score_slope) {
   const Spot begin{0, step.begin};
   const Spot end{step.length, step.end};
   std::vector<Spot> spots;
@@ -341,9 +354,11 @@ void SegmentChecker::watch_step(Watch& watch, const Step& step, F value, D slope
   Spot from = begin;
   const double at_begin = value(begin);
   const double at_end = value(end);
-  // The side on which the first stretch lies, told by the end that is further from zero; every crossing changes it.
-  bool offending = spots.size() % 2 == 1 ? (std::abs(at_begin) > std::abs(at_end) ? at_begin : at_end) > 0
-                                         : (std::abs(at_begin) > std::abs(at_end) ? at_begin > 0 : !(at_end > 0));
+  // The side on which the first stretch lies, told by the end that is further from zero; every crossing
+  // changes it.
+  bool offending = spots.size() % 2 == 1
+                       ? (std::abs(at_begin) > std::abs(at_end) ? at_begin : at_end) > 0
+                       : (std::abs(at_begin) > std::abs(at_end) ? at_begin > 0 : !(at_end > 0));
   for (std::size_t i = 0; i < spots.size(); ++i) {
     const Spot& to = spots[i];
     if (offending) {
@@ -493,7 +508,8 @@ void SegmentChecker::check_singular(const Step& step) {
   singular_at_begin_ = at_end;
   if (pass_possible && threshold > 0) {
     const auto value = [&](const Spot& s) { return threshold - singular_value(s.node.q); };
-    // Crossings by halving against the slope's bound: singular values are continuous, but not smooth where they cross.
+    // Crossings by halving against the slope's bound: singular values are continuous, but not smooth where
+    // they cross.
     std::vector<Spot> spots;
     const std::function<void(const Spot&, double, const Spot&, double, int)> search =
         [&](const Spot& a, double va, const Spot& b, double vb, int depth) {
@@ -502,7 +518,8 @@ void SegmentChecker::check_singular(const Step& step) {
             spots.push_back(root_between(sampler_, step, a, b, value));
             return;
           }
-          const double bound = std::isfinite(step.singular_slope) ? step.singular_slope : 4.0 / step.length * threshold;
+          const double bound =
+              std::isfinite(step.singular_slope) ? step.singular_slope : 4.0 / step.length * threshold;
           if (std::abs(va) + std::abs(vb) > bound * span || depth >= singular_halvings) return;
           Spot middle{a.t + 0.5 * span, {}};
           sampler_.at(step, middle.t, middle.node);
@@ -584,8 +601,8 @@ void SegmentChecker::with_sample(const Step& step, const Node& node, double posi
   const std::string branch = context_.arm.branches.signs(node.q);
   const Pose tcp = context_.arm.chain.forward(node.q);
   tell(TraceSample{context_.index, node.fraction, context_.path_length + context_.length_at(node.fraction),
-                   context_.path_time + node.fraction * context_.duration, node.q, speeds, singular_value(node.q), branch,
-                   position_residual, orientation_residual, tcp});
+                   context_.path_time + node.fraction * context_.duration, node.q, speeds,
+                   singular_value(node.q), branch, position_residual, orientation_residual, tcp});
 }
 
 void SegmentChecker::trace(const Step& step, double position_residual, double orientation_residual) {
@@ -604,13 +621,17 @@ void SegmentChecker::trace(const Step& step, double position_residual, double or
 }
 
 void SegmentChecker::show_extreme(const Step& step, const Node& node) {
-  if (is_traced()) with_sample(step, node, 0, 0, [&](const TraceSample& sample) { observer_->extreme(sample); });
+  if (is_traced())
+    with_sample(step, node, 0, 0, [&](const TraceSample& sample) { observer_->extreme(sample); });
 }
 
-void SegmentChecker::add(Finding f) { findings_.push_back(std::move(f)); }
+void SegmentChecker::add(Finding f) {
+  findings_.push_back(std::move(f));
+}
 
 void SegmentChecker::flip(double fraction, const Node& before, const Node& after) {
-  Finding f = finding(Code::branch_flip, -1, fraction, fraction, fraction, JointVector(0.5 * (before.q + after.q)));
+  Finding f =
+      finding(Code::branch_flip, -1, fraction, fraction, fraction, JointVector(0.5 * (before.q + after.q)));
   f.from_joints = before.q;
   f.to_joints = after.q;
   f.from_branch = context_.arm.branches.signs(before.q);
@@ -651,12 +672,25 @@ void SegmentChecker::regained(double fraction, const JointVector& /*at*/) {
 void SegmentChecker::finish() {
   close_all(1.0);
   if (lost_at_) regained(1.0, lost_joints_);
-  // Margins beside the matching error of the same joint, and unproven stretches with something worse on them, say
-  // nothing new.
-  const auto overlaps = [](const Finding& a, const Finding& b) { return a.begin <= b.end && b.begin <= a.end; };
+  // Margins beside the matching error of the same joint, and unproven stretches with something worse on them,
+  // say nothing new.
+  const auto overlaps = [](const Finding& a, const Finding& b) {
+    return a.begin <= b.end && b.begin <= a.end;
+  };
+  // A jump parts what touches there, as a waypoint does: the margin on its one side is not beside the error
+  // on the other.
+  std::vector<double> jumps;
+  for (const Finding& f : findings_) {
+    if (f.code == Code::joint_jump) jumps.push_back(f.begin);
+  }
+  const auto parted = [&](const Finding& a, const Finding& b) {
+    return std::any_of(jumps.begin(), jumps.end(), [&](double at) {
+      return (a.end == at && b.begin == at) || (b.end == at && a.begin == at);
+    });
+  };
   std::erase_if(findings_, [&](const Finding& f) {
     return std::any_of(findings_.begin(), findings_.end(), [&](const Finding& other) {
-      if (!overlaps(f, other)) return false;
+      if (!overlaps(f, other) || (f.code != Code::unproven && parted(f, other))) return false;
       if (f.code == Code::limit_margin) return other.code == Code::joint_limit && other.axis == f.axis;
       if (f.code == Code::speed_margin) return other.code == Code::joint_speed && other.axis == f.axis;
       return f.code == Code::unproven && level(other.code) == Level::error;

@@ -26,17 +26,17 @@ struct SegmentContext {
   const std::vector<Axis>& axes;
   const CheckOptions& options;
   int index = 0;
-  double duration = 0;          // s
-  bool cartesian = true;        // Cartesian moves alone are checked for speed margins and singular passes
-  double path_length = 0;       // mm travelled before this segment
-  double path_time = 0;         // s passed before it
+  double duration = 0;     // s
+  bool cartesian = true;   // Cartesian moves alone are checked for speed margins and singular passes
+  double path_length = 0;  // mm travelled before this segment
+  double path_time = 0;    // s passed before it
   std::function<double(double fraction)> length_at;  // mm from the segment's begin
   std::function<Pose(double fraction)> frame;        // of the waypoint, in the world
   std::function<Pose(double fraction)> target;       // of the TCP in the world (Cartesian moves)
 };
 
-/// Receives the steps of one segment and turns them into findings and tallies. Every begin, end and peak is found on
-/// the exact curve.
+/// Receives the steps of one segment and turns them into findings and tallies. Every begin, end and peak is
+/// found on the exact curve.
 class SegmentChecker final : public TrackSink {
  public:
   SegmentChecker(const SegmentContext& context, const StepSampler& sampler, CheckObserver* observer);
@@ -57,7 +57,9 @@ class SegmentChecker final : public TrackSink {
   [[nodiscard]] double proven_length() const { return proven_length_; }
   [[nodiscard]] double position_residual() const { return position_residual_; }
   [[nodiscard]] double orientation_residual() const { return orientation_residual_; }
-  [[nodiscard]] double peak_tcp_speed() const { return fastest_[static_cast<std::size_t>(points_.count() - 1)]; }
+  [[nodiscard]] double peak_tcp_speed() const {
+    return fastest_[static_cast<std::size_t>(points_.count() - 1)];
+  }
   /// Index and speed (mm/s) of the fastest joint centre; -1 where there is none but the TCP.
   [[nodiscard]] std::pair<int, double> fastest_point() const;
   [[nodiscard]] std::string point_name(int point) const { return points_.name(point); }
@@ -65,8 +67,8 @@ class SegmentChecker final : public TrackSink {
   void add(Finding finding);
 
  private:
-  /// A condition that is watched along the segment: an open stretch, its worst place so far, and whether a matching
-  /// error was met on it.
+  /// A condition that is watched along the segment: an open stretch, its worst place so far, and whether a
+  /// matching error was met on it.
   struct Watch {
     Code code = Code::joint_limit;
     int axis = -1;
@@ -78,8 +80,8 @@ class SegmentChecker final : public TrackSink {
     bool tainted = false;
     double begin = 0;
     double peak = 0;
-    double score = 0;   // how bad the peak is
-    double least = 0;   // a stretch whose score stays below is dropped (touching a margin)
+    double score = 0;  // how bad the peak is
+    double least = 0;  // a stretch whose score stays below is dropped (touching a margin)
     bool unbounded = false;
     JointVector joints;
   };
@@ -94,7 +96,8 @@ class SegmentChecker final : public TrackSink {
   void trace(const Step& step, double position_residual, double orientation_residual);
   void show_extreme(const Step& step, const Node& node);
   template <typename F>
-  void with_sample(const Step& step, const Node& node, double position_residual, double orientation_residual, F tell);
+  void with_sample(const Step& step, const Node& node, double position_residual, double orientation_residual,
+                   F tell);
   [[nodiscard]] bool is_traced() const { return observer_ && observer_->wants_samples(); }
   template <typename F, typename D, typename S, typename E>
   void watch_step(Watch& watch, const Step& step, F value, D slope, double bound, S score, E score_slope);
@@ -122,9 +125,9 @@ class SegmentChecker final : public TrackSink {
   std::vector<double> ratio_profile_;
   std::optional<double> min_singular_;
   std::optional<double> singular_at_begin_;  // exact value at the current step's begin, if computed
-  std::optional<Step> before_;               // the step before, while a lowest singular value is being bracketed
-  bool falling_ = false;                     // the step before ended at the lowest singular value so far
-  bool anew_ = false;                        // the next step doesn't begin where the one before ended
+  std::optional<Step> before_;  // the step before, while a lowest singular value is being bracketed
+  bool falling_ = false;        // the step before ended at the lowest singular value so far
+  bool anew_ = false;           // the next step doesn't begin where the one before ended
   long samples_ = 0;
   double proven_length_ = 0;
   double position_residual_ = 0, orientation_residual_ = 0;

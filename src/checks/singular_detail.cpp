@@ -13,12 +13,13 @@ SingularDetail singular_detail(const ArmContext& context, const JointVector& q) 
   out.runaway = direction.joints;
   out.lost_motion = direction.motion;
   if (context.branches.kind() != BranchAnalysis::Kind::factored) return out;
-  // Each factor is free of units: lengths over the characteristic length, the wrist's the sine of its bend. The one
-  // nearest to zero names the singularity.
+  // Each factor is free of units: lengths over the characteristic length, the wrist's the sine of its bend.
+  // The one nearest to zero names the singularity.
   const std::array<double, 3> factors = context.branches.factors(q);
   int least = 0;
   for (int i = 1; i < 3; ++i) {
-    if (std::abs(factors[static_cast<std::size_t>(i)]) < std::abs(factors[static_cast<std::size_t>(least)])) least = i;
+    if (std::abs(factors[static_cast<std::size_t>(i)]) < std::abs(factors[static_cast<std::size_t>(least)]))
+      least = i;
   }
   const double factor = std::abs(factors[static_cast<std::size_t>(least)]);
   if (least == 0) {

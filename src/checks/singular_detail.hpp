@@ -5,8 +5,8 @@
 
 namespace pathvet {
 
-/// What is singular at a configuration: kind by the branch factor that is nearest to zero, nearness in the arm's own
-/// measure, and the singular vectors of the smallest singular value.
+/// What is singular at a configuration: kind by the branch factor that is nearest to zero, nearness in the
+/// arm's own measure, and the singular vectors of the smallest singular value.
 [[nodiscard]] SingularDetail singular_detail(const ArmContext& context, const JointVector& q);
 
 }  // namespace pathvet

@@ -12,15 +12,18 @@ namespace {
 using BoundJacobian = Eigen::Matrix<double, Eigen::Dynamic, Eigen::Dynamic, 0, 6, max_joints>;
 using Matrix66 = Eigen::Matrix<double, 6, 6>;
 
-Matrix66 symmetric_product(const Matrix66& m) { return m.transpose().lazyProduct(m); }
+Matrix66 symmetric_product(const Matrix66& m) {
+  return m.transpose().lazyProduct(m);
+}
 
-/// The inverse loses digits by the condition number; below this its smallest singular value is left to the SVD.
+/// The inverse loses digits by the condition number; below this its smallest singular value is left to the
+/// SVD.
 constexpr double trusted = 1e-4;
 constexpr double agreement = 1e-13;  // relative, of the two-sided bound
 constexpr int most_squarings = 11;
 
-/// The greatest eigenvalue g of W^T W lies between a Rayleigh quotient and the 2^k-th root of the Frobenius norm of the
-/// 2^k-th power; squaring the matrix brings the two together however near the next eigenvalue is.
+/// The greatest eigenvalue g of W^T W lies between a Rayleigh quotient and the 2^k-th root of the Frobenius
+/// norm of the 2^k-th power; squaring the matrix brings the two together however near the next eigenvalue is.
 std::optional<double> by_squaring(const Matrix66& inverse) {
   const Matrix66 gram = symmetric_product(inverse);
   const double norm = gram.norm();

@@ -12,8 +12,12 @@ struct Jet {
   double value = 0, first = 0, second = 0;
 };
 
-Jet operator+(const Jet& a, const Jet& b) { return {a.value + b.value, a.first + b.first, a.second + b.second}; }
-Jet operator-(const Jet& a, const Jet& b) { return {a.value - b.value, a.first - b.first, a.second - b.second}; }
+Jet operator+(const Jet& a, const Jet& b) {
+  return {a.value + b.value, a.first + b.first, a.second + b.second};
+}
+Jet operator-(const Jet& a, const Jet& b) {
+  return {a.value - b.value, a.first - b.first, a.second - b.second};
+}
 Jet operator*(const Jet& a, const Jet& b) {
   return {a.value * b.value, a.first * b.value + a.value * b.first,
           a.second * b.value + 2 * a.first * b.first + a.value * b.second};
@@ -23,7 +27,9 @@ Jet operator*(const Jet& a, const Jet& b) {
 Jet compose(const Jet& a, double f, double df, double ddf) {
   return {f, df * a.first, ddf * a.first * a.first + df * a.second};
 }
-Jet cosine(const Jet& a) { return compose(a, std::cos(a.value), -std::sin(a.value), -std::cos(a.value)); }
+Jet cosine(const Jet& a) {
+  return compose(a, std::cos(a.value), -std::sin(a.value), -std::cos(a.value));
+}
 
 /// x / sin x and its derivatives; the series holds below 0.05 with an error under 1e-12.
 Jet over_sine(const Jet& x) {
@@ -54,12 +60,13 @@ JetQuaternion conjugate(JetQuaternion q) {
   return q;
 }
 
-/// exp(power * log q) for a unit q with w > 0. log is smooth there: half-angle over its sine times the vector part.
+/// exp(power * log q) for a unit q with w > 0. log is smooth there: half-angle over its sine times the vector
+/// part.
 JetQuaternion power(const JetQuaternion& q, const Jet& exponent) {
   const Jet sine_squared = q[1] * q[1] + q[2] * q[2] + q[3] * q[3];
   if (sine_squared.value < 1e-26) {
-    // The two ends coincide here (and, both being smooth, stay together to first order): linear blending is exact
-    // to the square of the angle between them.
+    // The two ends coincide here (and, both being smooth, stay together to first order): linear blending is
+    // exact to the square of the angle between them.
     JetQuaternion out{Jet{1, 0, 0}, exponent * q[1], exponent * q[2], exponent * q[3]};
     return out;
   }
@@ -94,10 +101,10 @@ JetQuaternion constant(const Eigen::Quaterniond& q) {
 
 }  // namespace
 
-Corner::Corner(const Pose& a, const Vector3& tangent_a, const Matrix3& corner, const Pose& b, const Vector3& tangent_b,
-               double size, double rate_in, double rate_out)
-    : control_{a.position, a.position + 2.0 / 3.0 * size * tangent_a, b.position - 2.0 / 3.0 * size * tangent_b,
-               b.position},
+Corner::Corner(const Pose& a, const Vector3& tangent_a, const Matrix3& corner, const Pose& b,
+               const Vector3& tangent_b, double size, double rate_in, double rate_out)
+    : control_{a.position, a.position + 2.0 / 3.0 * size * tangent_a,
+               b.position - 2.0 / 3.0 * size * tangent_b, b.position},
       orientation_{quaternion(a.rotation), quaternion(corner), quaternion(b.rotation)},
       rate_in_(rate_in),
       rate_out_(rate_out) {}

@@ -6,8 +6,8 @@
 namespace pathvet {
 namespace {
 
-/// Three points carry a circle if the triangle's height is above this share of its longest side; below it the centre is
-/// lost in rounding.
+/// Three points carry a circle if the triangle's height is above this share of its longest side; below it the
+/// centre is lost in rounding.
 constexpr double flattest_arc = 1e-9;
 
 Matrix3 cross_matrix(const Vector3& v) {

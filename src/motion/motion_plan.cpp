@@ -9,7 +9,8 @@ namespace {
 /// A segment shorter than this does not move its TCP (mm), one that turns less does not turn (rad).
 constexpr double no_length = 1e-9;
 constexpr double no_turn = 1e-12;
-/// Bounds of curves that have no closed one are sampled this often over the piece, and raised by `sampled_raise`.
+/// Bounds of curves that have no closed one are sampled this often over the piece, and raised by
+/// `sampled_raise`.
 constexpr int bound_samples = 65;
 constexpr double sampled_raise = 1.25;
 
@@ -54,7 +55,8 @@ Pose MotionPlan::start_in_frame(int waypoint, const std::optional<Pose>& start) 
   } else {
     world = programmed(waypoint - 1);
     if (path_.waypoints[i].tool != path_.waypoints[i - 1].tool)
-      world = world * tool_placement(cell_, path_.waypoints[i - 1]).inverse() * tool_placement(cell_, path_.waypoints[i]);
+      world = world * tool_placement(cell_, path_.waypoints[i - 1]).inverse() *
+              tool_placement(cell_, path_.waypoints[i]);
   }
   if (const auto moving = sources_.moving_frame(waypoint)) {
     CurvePoint frame;
@@ -85,13 +87,27 @@ MotionPlan::Shape MotionPlan::shape(int waypoint) const {
   Shape out;
   out.turn = leg(waypoint).turn();
   if (w.move == Move::circular)
-    out.is_arc = Leg::is_arc(start_in_frame(waypoint, {}).position, outer * *w.via, (outer * *w.pose).position);
+    out.is_arc =
+        Leg::is_arc(start_in_frame(waypoint, {}).position, outer * *w.via, (outer * *w.pose).position);
   return out;
 }
 
 double MotionPlan::nominal_duration(int waypoint, const Leg& leg) const {
   const Waypoint& w = path_.waypoints[static_cast<std::size_t>(waypoint)];
-  return std::max(leg.length() < no_length ? 0.0 : leg.length() / w.speed, leg.turn() / w.turn_rate);
+  const double own =
+      std::max(leg.length() < no_length ? 0.0 : leg.length() / w.speed, leg.turn() / w.turn_rate);
+  if (own > 0 || cell_.positioners.empty()) return own;
+  // Nothing moves in the frame: the positioners alone set the time, as a joint move would.
+  const Waypoint& before = path_.waypoints[static_cast<std::size_t>(waypoint) - 1];
+  double least = 0;
+  for (std::size_t k = 0; k < cell_.positioners.size(); ++k) {
+    const JointVector change = w.external[k] - before.external[k];
+    for (int i = 0; i < change.size(); ++i)
+      least = std::max(least,
+                       std::abs(change[i]) /
+                           (w.joint_rate * cell_.positioners[k].joints[static_cast<std::size_t>(i)].speed));
+  }
+  return least;
 }
 
 bool MotionPlan::same_carrier(int a, int b) const {
@@ -99,7 +115,8 @@ bool MotionPlan::same_carrier(int a, int b) const {
   const bool moving_b = sources_.moving_frame(b) != nullptr;
   if (!moving_a && !moving_b) return true;
   return moving_a && moving_b &&
-         path_.waypoints[static_cast<std::size_t>(a)].frame == path_.waypoints[static_cast<std::size_t>(b)].frame;
+         path_.waypoints[static_cast<std::size_t>(a)].frame ==
+             path_.waypoints[static_cast<std::size_t>(b)].frame;
 }
 
 MotionPlan::Blend MotionPlan::blend(int waypoint) const {
@@ -121,8 +138,8 @@ MotionPlan::Blend MotionPlan::blend(int waypoint) const {
   if (before < no_length || after < no_length) return none("it is next to a turn on the spot");
   const double size = std::min({w.blend, 0.5 * before, 0.5 * after});
   if (size == w.blend) return {size, ""};
-  return {size, "The blend at waypoint " + w.id + " is clamped from " + trimmed(w.blend) + " mm to " + trimmed(size) +
-                    " mm, half of the shorter segment beside it."};
+  return {size, "The blend at waypoint " + w.id + " is clamped from " + trimmed(w.blend) + " mm to " +
+                    trimmed(size) + " mm, half of the shorter segment beside it."};
 }
 
 std::vector<std::string> MotionPlan::notes() const {
@@ -143,14 +160,9 @@ Corner MotionPlan::corner(int waypoint, double size) const {
   in.at(1 - size / in.length(), a);
   in.at(1, middle);
   out.at(size / out.length(), b);
-  return {a.pose,
-          a.first.head<3>().normalized(),
-          middle.pose.rotation,
-          b.pose,
-          b.first.head<3>().normalized(),
-          size,
-          speed_in / (2 * size),
-          speed_out / (2 * size)};
+  return {
+      a.pose, a.first.head<3>().normalized(), middle.pose.rotation,  b.pose, b.first.head<3>().normalized(),
+      size,   speed_in / (2 * size),          speed_out / (2 * size)};
 }
 
 SegmentMotion MotionPlan::segment(int waypoint, const std::optional<Pose>& start) const {
@@ -220,8 +232,8 @@ SegmentMotion MotionPlan::segment(int waypoint, const std::optional<Pose>& start
       piece.bounds.third_angular *= r2 * piece.rate;
       continue;
     }
-    // No closed bound: the second derivative is smooth over the piece, so its greatest sampled value and greatest
-    // sampled change stand in for it, raised by a quarter.
+    // No closed bound: the second derivative is smooth over the piece, so its greatest sampled value and
+    // greatest sampled change stand in for it, raised by a quarter.
     CurvePoint last, now;
     const double h = (piece.end - from) / (bound_samples - 1);
     for (int k = 0; k < bound_samples; ++k) {

@@ -122,8 +122,8 @@ bool ArcTracker::advance(double most, Step& step) {
   step.fraction_unit = unit_;
   step.begin = node(place_);
   step.end = node(next);
-  // The step's own parameter is the advance along the begin's tangent; at the end the curve is parametrised anew, so
-  // the end's derivatives are brought to this step's parameter.
+  // The step's own parameter is the advance along the begin's tangent; at the end the curve is parametrised
+  // anew, so the end's derivatives are brought to this step's parameter.
   const double gain = 1.0 / place_.tangent.dot(next.tangent);
   const Unknowns rate = gain * next.tangent;
   const double bent = place_.tangent.dot(next.curvature);
@@ -171,9 +171,9 @@ ArcTracker::Rows ArcTracker::bilinear(const Place& place, const Unknowns& a, con
 }
 
 std::optional<ArcTracker::Meeting> ArcTracker::meeting() const {
-  // Lyapunov-Schmidt reduction: along the two directions that the linearised task (nearly) does not see, the one row it
-  // (nearly) loses is a quadratic form; its stationary point is where two curves meet if the target were shifted by
-  // the value found there. Iterated until the point stands still.
+  // Lyapunov-Schmidt reduction: along the two directions that the linearised task (nearly) does not see, the
+  // one row it (nearly) loses is a quadratic form; its stationary point is where two curves meet if the
+  // target were shifted by the value found there. Iterated until the point stands still.
   Place here = place_;
   Eigen::Matrix2d form;
   Unknowns first, second;
@@ -211,7 +211,8 @@ std::optional<ArcTracker::Meeting> ArcTracker::meeting() const {
   out.orientation_miss = row.size() > 3 ? std::abs(shift) * row.tail(row.size() - 3).norm() : 0.0;
   out.crosses = form.determinant() < 0;
   if (!out.crosses) return out;
-  // Directions in which the quadratic form vanishes; the one nearest to the current tangent is its continuation.
+  // Directions in which the quadratic form vanishes; the one nearest to the current tangent is its
+  // continuation.
   first = here.right.col(joints_);
   second = here.right.col(joints_ - 1);
   form(0, 0) = row.dot(bilinear(here, first, first));
@@ -223,9 +224,9 @@ std::optional<ArcTracker::Meeting> ArcTracker::meeting() const {
   if (!(low < 0 && high > 0)) return std::nullopt;
   double best = -1;
   for (const double sign : {1.0, -1.0}) {
-    const Eigen::Vector2d direction = (std::sqrt(high) * eigen.eigenvectors().col(0) +
-                                       sign * std::sqrt(-low) * eigen.eigenvectors().col(1))
-                                          .normalized();
+    const Eigen::Vector2d direction =
+        (std::sqrt(high) * eigen.eigenvectors().col(0) + sign * std::sqrt(-low) * eigen.eigenvectors().col(1))
+            .normalized();
     Unknowns candidate = first * direction[0] + second * direction[1];
     const double along = candidate.dot(place_.tangent);
     if (along < 0) candidate = -candidate;
@@ -237,10 +238,24 @@ std::optional<ArcTracker::Meeting> ArcTracker::meeting() const {
   return out;
 }
 
-bool ArcTracker::cross(const Meeting& meeting, double beyond, Step& step) {
+bool ArcTracker::cross(const Meeting& meeting, double beyond, double most, Step& step) {
   Place next = place_;
   set(next, meeting.y + beyond * meeting.ahead);
-  if (!correct(next, meeting.y, meeting.ahead, beyond)) return false;
+  const double rate = unit_ * meeting.ahead[joints_];
+  if (next.task.fraction < most) {
+    if (!correct(next, meeting.y, meeting.ahead, beyond)) return false;
+  }
+  if (next.task.fraction >= most) {
+    // The fraction itself is the border: the end lies exactly there.
+    if (!(rate > 0)) return false;
+    beyond = (most - meeting.fraction) / rate;
+    if (!(beyond > 0)) return false;
+    set(next, meeting.y + beyond * meeting.ahead);
+    Unknowns along_fraction = Unknowns::Zero(joints_ + 1);
+    along_fraction[joints_] = 1;
+    if (!correct(next, meeting.y, along_fraction, most / unit_ - meeting.y[joints_])) return false;
+    next.task.fraction = most;
+  }
   // A correction that is not small against the distance crossed has found another curve.
   if ((next.y - meeting.y - beyond * meeting.ahead).norm() > 0.2 * beyond) return false;
   compute(next, meeting.ahead);

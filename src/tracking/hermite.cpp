@@ -34,12 +34,9 @@ void interpolate(const Step& step, double t, Node& out) {
                     (30 * u2 - 60 * u3 + 30 * u4) / h,
                     -12 * u2 + 28 * u3 - 15 * u4,
                     h * 0.5 * (3 * u2 - 8 * u3 + 5 * u4)};
-  const Basis second{(-60 * u + 180 * u2 - 120 * u3) / (h * h),
-                     (-36 * u + 96 * u2 - 60 * u3) / h,
-                     0.5 * (2 - 18 * u + 36 * u2 - 20 * u3),
-                     (60 * u - 180 * u2 + 120 * u3) / (h * h),
-                     (-24 * u + 84 * u2 - 60 * u3) / h,
-                     0.5 * (6 * u - 24 * u2 + 20 * u3)};
+  const Basis second{(-60 * u + 180 * u2 - 120 * u3) / (h * h), (-36 * u + 96 * u2 - 60 * u3) / h,
+                     0.5 * (2 - 18 * u + 36 * u2 - 20 * u3),    (60 * u - 180 * u2 + 120 * u3) / (h * h),
+                     (-24 * u + 84 * u2 - 60 * u3) / h,         0.5 * (6 * u - 24 * u2 + 20 * u3)};
   const Node& a = step.begin;
   const Node& b = step.end;
   const auto fraction = [&](const Basis& basis) {

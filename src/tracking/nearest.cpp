@@ -18,7 +18,9 @@ double shares(const Arm& arm, const JointVector& from, const JointVector& to) {
   return sum;
 }
 
-bool differ(double a, double b) { return std::abs(a - b) > tie * (std::abs(a) + std::abs(b)) + 1e-12; }
+bool differ(double a, double b) {
+  return std::abs(a - b) > tie * (std::abs(a) + std::abs(b)) + 1e-12;
+}
 
 }  // namespace
 

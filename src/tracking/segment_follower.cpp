@@ -8,19 +8,19 @@
 #include "pathvet/tracking/hermite.hpp"
 #include "pathvet/tracking/nearest.hpp"
 
-// Why a step cannot miss an event (docs/methods.md, "Proof of continuity"): follow_fraction only makes steps whose whole
-// travel stays inside the ball in which the Jacobian provably keeps its rank, so that the curve through the begin is
-// unique up to the end; the corrected end lies in the same ball and therefore on that curve. Where such a step would be
-// shorter than `least_share` of the nominal one, the curve is followed by arc length instead, with the same proof in
-// one more variable.
+// Why a step cannot miss an event (docs/methods.md, "Proof of continuity"): follow_fraction only makes steps
+// whose whole travel stays inside the ball in which the Jacobian provably keeps its rank, so that the curve
+// through the begin is unique up to the end; the corrected end lies in the same ball and therefore on that
+// curve. Where such a step would be shorter than `least_share` of the nominal one, the curve is followed by
+// arc length instead, with the same proof in one more variable.
 
 namespace pathvet {
 namespace {
 
-constexpr double proof_share = 0.9;        // of the provable travel, so that rounding never decides
+constexpr double proof_share = 0.9;  // of the provable travel, so that rounding never decides
 constexpr int most_corrections = 12;
-constexpr double converged = 2e-11;        // scaled; the next correction would be its square
-constexpr double suspicious = 1e-2;        // smallest singular value; above it no pass is exact
+constexpr double converged = 2e-11;         // scaled; the next correction would be its square
+constexpr double suspicious = 1e-2;         // smallest singular value; above it no pass is exact
 constexpr double largest_correction = 0.3;  // scaled; a larger one has left the branch
 
 }  // namespace
@@ -35,8 +35,8 @@ SegmentFollower<N>::SegmentFollower(const ArmContext& context, const SegmentMoti
       general_(context.arm, context.chain, motion, context.orientation) {}
 
 template <int N>
-typename SegmentFollower<N>::End SegmentFollower<N>::run(const JointVector& q, bool reached, std::string& branch,
-                                                         TrackSink& sink) {
+typename SegmentFollower<N>::End SegmentFollower<N>::run(const JointVector& q, bool reached,
+                                                         std::string& branch, TrackSink& sink) {
   signs_ = branch;
   State state;
   state.q = q;
@@ -53,7 +53,8 @@ typename SegmentFollower<N>::End SegmentFollower<N>::run(const JointVector& q, b
       if (outcome == Outcome::calm) {
         outcome = follow_fraction(state, sink);
       } else if (outcome == Outcome::singular) {
-        outcome = task_.joints() <= task_.rows() ? follow_arc(state, sense, sink) : follow_damped(state, sink);
+        outcome =
+            task_.joints() <= task_.rows() ? follow_arc(state, sense, sink) : follow_damped(state, sink);
         sense.reset();
       } else {
         outcome = recover(state, sense, sink);
@@ -64,8 +65,8 @@ typename SegmentFollower<N>::End SegmentFollower<N>::run(const JointVector& q, b
   return {state.q, !lost_, false};
 }
 
-/// The nominal spacing of samples: the piece cut evenly so that neither the TCP nor its orientation moves further than
-/// asked from sample to sample.
+/// The nominal spacing of samples: the piece cut evenly so that neither the TCP nor its orientation moves
+/// further than asked from sample to sample.
 template <int N>
 double SegmentFollower<N>::spacing(int piece) const {
   constexpr int probes = 9;
@@ -102,8 +103,8 @@ double SegmentFollower<N>::scaled_speed(double fraction) const {
                     context_.orientation == Orientation::free ? 0.0 : point.first.tail<3>().norm());
 }
 
-/// Newton (the damped step with a damping driven by the error, which is below rounding here) until the correction is
-/// too small to matter. Leaves inverse and derivatives at the converged joints.
+/// Newton (the damped step with a damping driven by the error, which is below rounding here) until the
+/// correction is too small to matter. Leaves inverse and derivatives at the converged joints.
 template <int N>
 bool SegmentFollower<N>::converge(int piece, State& state) const {
   double last = 1;
@@ -115,7 +116,8 @@ bool SegmentFollower<N>::converge(int piece, State& state) const {
     if (!(size < largest_correction)) return false;
     state.q += task_.scale().cwiseProduct(change);
     state.error -= state.jacobian * change;
-    // Badly conditioned places stall at a multiple of rounding; a correction that no longer shrinks is as good.
+    // Badly conditioned places stall at a multiple of rounding; a correction that no longer shrinks is as
+    // good.
     if (size < converged || (i >= 2 && size > 0.3 * last && size < 1e-9)) {
       task_.derivatives(piece, state);
       return state.rate.allFinite();
@@ -150,7 +152,8 @@ Node SegmentFollower<N>::node(const State& state) const {
 template <int N>
 bool SegmentFollower<N>::emit(const Step& step, const State& at_end, TrackSink& sink) const {
   const double position = at_end.error.template head<3>().norm() * context_.chain.characteristic_length();
-  const double orientation = at_end.error.size() > 3 ? at_end.error.tail(at_end.error.size() - 3).norm() : 0.0;
+  const double orientation =
+      at_end.error.size() > 3 ? at_end.error.tail(at_end.error.size() - 3).norm() : 0.0;
   return sink.step(step, position, orientation);
 }
 
@@ -213,7 +216,8 @@ typename SegmentFollower<N>::Outcome SegmentFollower<N>::follow_fraction(State& 
       h = most;
       next.fraction = state.fraction + h;
     }
-    next.q = state.q + task_.scale().cwiseProduct(h * (state.rate + h * (0.5 * state.rate_rate + h / 6 * jerk)));
+    next.q =
+        state.q + task_.scale().cwiseProduct(h * (state.rate + h * (0.5 * state.rate_rate + h / 6 * jerk)));
     if (!converge(next)) return Outcome::singular;
     if (tall && !within_tolerance(next)) {
       // The arm can't hold the pose: find where the miss leaves the tolerance.
@@ -281,8 +285,8 @@ bool SegmentFollower<N>::exactly_singular(const State& state) const {
   if (smallest < 1e-13) return true;
   const Eigen::Matrix<double, Eigen::Dynamic, 1, 0, 6, 1> u = svd.matrixU().col(last);
   const JointVector v = svd.matrixV().col(last);
-  // The gradient of the smallest singular value by the joints, turned into the smallest change of the pose that brings
-  // it to zero (to first order).
+  // The gradient of the smallest singular value by the joints, turned into the smallest change of the pose
+  // that brings it to zero (to first order).
   JointVector gradient(general_.joints());
   for (int i = 0; i < general_.joints(); ++i) {
     double sides[2];

@@ -48,6 +48,7 @@ class SegmentFollower final : public Follower {
   [[nodiscard]] double spacing(int piece) const;
   [[nodiscard]] double affordable(const State& state) const;
   bool emit(const Step& step, const State& at_end, TrackSink& sink) const;
+  bool emit_crossing(const Step& step, TrackSink& sink) const;
   void adopt(State& state, double fraction, const JointVector& q) const;
 
   ArmContext context_;

@@ -3,29 +3,31 @@
 #include <cmath>
 
 #include "pathvet/tracking/continuity.hpp"
+#include "pathvet/tracking/hermite.hpp"
 #include "pathvet/tracking/nearest.hpp"
 #include "segment_follower.hpp"
 
-// The singular part of a segment: followed by arc length, across exact singularities, past folds and jumps, and from
-// where the pose comes back into reach.
+// The singular part of a segment: followed by arc length, across exact singularities, past folds and jumps,
+// and from where the pose comes back into reach.
 
 namespace pathvet {
 namespace {
 
-/// Below this regularity of the arc's linearised task a meeting with another solution curve is looked for. A pass that
-/// misses by the exact tolerance (about 1e-7 in scaled units) bottoms out near its square root.
+/// Below this regularity of the arc's linearised task a meeting with another solution curve is looked for. A
+/// pass that misses by the exact tolerance (about 1e-7 in scaled units) bottoms out near its square root.
 constexpr double suspicious_regularity = 4e-3;
-constexpr double meeting_reach = 0.1;     // scaled distance to the meeting that may be crossed in one step
+constexpr double meeting_reach = 0.1;  // scaled distance to the meeting that may be crossed in one step
 constexpr int most_arc_steps = 200000;
 constexpr double least_arc_step = 1e-13;
-/// The solutions beyond a singular place are looked at this far ahead (scaled length of the target's motion): far
-/// beyond the tolerance of an exact pass, near enough to be "there".
+/// The solutions beyond a singular place are looked at this far ahead (scaled length of the target's motion):
+/// far beyond the tolerance of an exact pass, near enough to be "there".
 constexpr double probe_length = 1e-5;
 /// Solutions this near to each other (rad, scaled) belong to one fold seen from the probe.
-constexpr double fold_reach = 0.1;
-/// A restart that moves no joint further than this is continuous: the direction of a tiny offset is known to about the
-/// exact tolerance over probe_length.
-constexpr double continuous_reach = 0.03;
+constexpr double fold_reach = 0.3;
+/// From an exactly singular begin the motion's direction decides, which is known to about the exact tolerance
+/// over this; a restart that moves no joint further than `continuous_reach` is continuous.
+constexpr double restart_length = 1e-4;
+constexpr double continuous_reach = 3e-3;
 constexpr double truncated = 1e-4;  // singular values below it are left out of a damped step
 
 double largest_change(const JointVector& a, const JointVector& b, const JointVector& scale) {
@@ -46,9 +48,8 @@ double root(F f, double length, double at_begin, double at_end) {
 }  // namespace
 
 template <int N>
-typename SegmentFollower<N>::Outcome SegmentFollower<N>::follow_arc(State& state,
-                                                                    const std::optional<ArcTracker::Unknowns>& sense,
-                                                                    TrackSink& sink) {
+typename SegmentFollower<N>::Outcome SegmentFollower<N>::follow_arc(
+    State& state, const std::optional<ArcTracker::Unknowns>& sense, TrackSink& sink) {
   ArcTracker arc(general_, piece_);
   if (sense) {
     arc.start(state.fraction, state.q, *sense);
@@ -165,14 +166,39 @@ typename SegmentFollower<N>::Outcome SegmentFollower<N>::follow_arc(State& state
   return follow_damped(state, sink);
 }
 
+/// A step across an exact singularity in parts as near to each other as samples have to be: the same curve,
+/// looked at in more places, with the residual that it has there.
+template <int N>
+bool SegmentFollower<N>::emit_crossing(const Step& step, TrackSink& sink) const {
+  const double share = std::abs(step.end.fraction - step.begin.fraction) / spacing_;
+  const int parts = std::max(1, static_cast<int>(std::ceil(share - 1e-9)));
+  Step part = step;
+  part.length = step.length / parts;
+  TaskState<Eigen::Dynamic> at;
+  for (int i = 1; i <= parts; ++i) {
+    if (i == parts) {
+      part.end = step.end;
+    } else {
+      interpolate(step, i * part.length, part.end);
+    }
+    at.q = part.end.q;
+    at.fraction = part.end.fraction;
+    general_.evaluate(step.piece, at);
+    const double position = at.error.head<3>().norm() * context_.chain.characteristic_length();
+    const double orientation = at.error.size() > 3 ? at.error.tail(at.error.size() - 3).norm() : 0.0;
+    part.proven = step.proven && position <= position_tolerance && orientation <= orientation_tolerance;
+    if (!sink.step(part, position, orientation)) return false;
+    part.begin = part.end;
+  }
+  return true;
+}
+
 /// Across (or up to) an exact singularity on the smooth continuation.
 template <int N>
 typename SegmentFollower<N>::Outcome SegmentFollower<N>::cross_meeting(ArcTracker& arc,
                                                                        const ArcTracker::Meeting& meeting,
                                                                        TrackSink& sink) {
   const int joints = task_.joints();
-  State at_end;
-  at_end.error = TaskColumn<N>::Zero(task_.rows());
   Step step;
   const double here = arc.place().task.fraction;
   const double ahead = arc.unit() * meeting.ahead[joints];  // fraction per arc length
@@ -181,23 +207,22 @@ typename SegmentFollower<N>::Outcome SegmentFollower<N>::cross_meeting(ArcTracke
   if (meeting.fraction >= end_ - slack) {
     if (end_ - here < 0) return Outcome::lost;
     arc.stop_at(meeting, end_, step);
-    return emit(step, at_end, sink) ? Outcome::end : Outcome::stopped;
+    return emit_crossing(step, sink) ? Outcome::end : Outcome::stopped;
   }
   double beyond = std::max((meeting.y - arc.place().y).norm(), 1e-4);
   if (ahead > 0) beyond = std::min(beyond, (end_ - meeting.fraction) / ahead);
-  if (!arc.cross(meeting, beyond, step)) return Outcome::lost;
-  if (step.end.fraction > end_ - 1e-13) step.end.fraction = end_;
+  if (!arc.cross(meeting, beyond, end_, step)) return Outcome::lost;
   const Node before = step.begin;
   const Node after = step.end;
-  if (!emit(step, at_end, sink)) return Outcome::stopped;
+  if (!emit_crossing(step, sink)) return Outcome::stopped;
   const std::string signs_after = context_.branches.signs(after.q);
   if (signs_after != signs_) sink.flip(meeting.fraction, before, after);
   signs_ = signs_after;
   return Outcome::calm;
 }
 
-/// Steps that follow the task as far as the arm can at (nearly) singular configurations: the directions lost are left
-/// out, and the pose is met all the same, or the place is lost. Nothing is proven here.
+/// Steps that follow the task as far as the arm can at (nearly) singular configurations: the directions lost
+/// are left out, and the pose is met all the same, or the place is lost. Nothing is proven here.
 template <int N>
 typename SegmentFollower<N>::Outcome SegmentFollower<N>::follow_damped(State& state, TrackSink& sink) {
   using Matrix = Eigen::Matrix<double, Eigen::Dynamic, Eigen::Dynamic, 0, max_joints, max_joints>;
@@ -265,8 +290,8 @@ typename SegmentFollower<N>::Outcome SegmentFollower<N>::follow_damped(State& st
   return Outcome::end;
 }
 
-/// From an exactly singular begin: which solutions does the motion ask for just ahead? The nearest continues smoothly, or
-/// is where the arm would have to jump.
+/// From an exactly singular begin: which solutions does the motion ask for just ahead? The nearest continues
+/// smoothly, or is where the arm would have to jump.
 template <int N>
 typename SegmentFollower<N>::Outcome SegmentFollower<N>::restart(State& state, TrackSink& sink) {
   const double speed = scaled_speed(state.fraction);
@@ -276,7 +301,7 @@ typename SegmentFollower<N>::Outcome SegmentFollower<N>::restart(State& state, T
     state.error = TaskColumn<N>::Zero(task_.rows());
     return follow_damped(state, sink);
   }
-  const double ahead = std::min(probe_length / speed, 0.5 * (end_ - begin));
+  const double ahead = std::min(restart_length / speed, 0.5 * (end_ - begin));
   std::vector<JointVector> found = context_.finder.find(pose_at(begin + ahead), context_.orientation).joints;
   std::vector<JointVector> near;
   for (const JointVector& q : found) {
@@ -303,7 +328,9 @@ typename SegmentFollower<N>::Outcome SegmentFollower<N>::restart(State& state, T
     sense.head(task_.joints()) = (chosen - from).cwiseQuotient(task_.scale());
     arc.start(begin, from, sense);
     const double rate = arc.unit() * arc.place().tangent[task_.joints()] * speed;
-    if (arc.place().regularity > 1e-2 && std::abs(rate) < 0.1 &&
+    // Along a fold the fraction grows with the square of the arc; along a self-motion it stands still.
+    const double bent = arc.place().curvature[task_.joints()];
+    if (arc.place().regularity > 1e-2 && std::abs(rate) < 0.1 && bent > 1e-3 &&
         std::abs(arc.place().tangent.dot(sense)) > 0.9 * sense.norm()) {
       state.q = from;
       return follow_arc(state, sense, sink);
@@ -339,7 +366,8 @@ typename SegmentFollower<N>::Outcome SegmentFollower<N>::restart(State& state, T
   return affordable(state) >= least_share * spacing_ ? Outcome::calm : Outcome::singular;
 }
 
-/// Where the branch ends: jump to a solution that is left, or go on from where the pose comes back into reach.
+/// Where the branch ends: jump to a solution that is left, or go on from where the pose comes back into
+/// reach.
 template <int N>
 typename SegmentFollower<N>::Outcome SegmentFollower<N>::recover(State& state,
                                                                  std::optional<ArcTracker::Unknowns>& sense,
@@ -392,8 +420,8 @@ typename SegmentFollower<N>::Outcome SegmentFollower<N>::recover(State& state,
 }
 
 template <int N>
-bool SegmentFollower<N>::back_in_reach(State& state, double unreached, double reached, const JointVector& left,
-                                       std::optional<ArcTracker::Unknowns>& sense) {
+bool SegmentFollower<N>::back_in_reach(State& state, double unreached, double reached,
+                                       const JointVector& left, std::optional<ArcTracker::Unknowns>& sense) {
   const auto solutions = [&](double fraction) {
     return context_.finder.find(pose_at(fraction), context_.orientation).joints;
   };
@@ -410,26 +438,10 @@ bool SegmentFollower<N>::back_in_reach(State& state, double unreached, double re
   for (JointVector& q : found) q = turned_towards(context_.arm, q, left);
   const auto first = nearest(context_.arm, left, found);
   if (!first) return false;
-  JointVector chosen = found[*first];
-  std::vector<JointVector> born;
-  for (const JointVector& q : found) {
-    if (largest_change(q, chosen, task_.scale()) < fold_reach) born.push_back(q);
-  }
-  std::vector<JointVector> same;
-  for (const JointVector& q : born) {
-    if (context_.branches.signs(q) == signs_) same.push_back(q);
-  }
-  if (!same.empty()) {
-    chosen = same[*nearest(context_.arm, left, same)];
-  } else {
-    for (const JointVector& q : born) {
-      if (std::lexicographical_compare(q.begin(), q.end(), chosen.begin(), chosen.end())) chosen = q;
-    }
-  }
+  const JointVector chosen = found[*first];
   State next;
   adopt(next, reached + ahead, chosen);
   if (!converge(next)) return false;
-  signs_ = context_.branches.signs(next.q);
   if (task_.joints() <= task_.rows()) {
     // Back along the curve to the fold it was born in: the exact place where the pose comes into reach.
     ArcTracker arc(general_, piece_);
@@ -448,14 +460,30 @@ bool SegmentFollower<N>::back_in_reach(State& state, double unreached, double re
       Node fold;
       arc.at(step, t, fold);
       if (fold.fraction < unreached - 10 * ahead) break;
-      ArcTracker::Unknowns direction(task_.joints() + 1);
-      direction.head(task_.joints()) = -fold.rate.cwiseQuotient(task_.scale());
-      direction[task_.joints()] = 0;
-      sense = direction;
+      ArcTracker::Unknowns onwards(task_.joints() + 1);
+      onwards.head(task_.joints()) = fold.rate.cwiseQuotient(task_.scale());
+      onwards[task_.joints()] = 0;
+      // Two solutions are born there: the one we came from, and the one that the curve leads on to.
+      ArcTracker other(general_, piece_);
+      other.start(fold.fraction, fold.q, onwards);
+      for (int k = 0; k < 2000 && other.place().task.fraction < next.fraction; ++k) {
+        if (!other.advance(1.0, step)) break;
+      }
+      const JointVector twin = other.place().task.q;
+      const std::string signs_here = context_.branches.signs(next.q);
+      const std::string signs_there = context_.branches.signs(twin);
+      const bool here_kept = signs_here == signs_;
+      const bool there_kept = signs_there == signs_;
+      const bool there = here_kept == there_kept ? std::lexicographical_compare(twin.begin(), twin.end(),
+                                                                                next.q.begin(), next.q.end())
+                                                 : there_kept;
+      sense = there ? onwards : ArcTracker::Unknowns(-onwards);
+      signs_ = there ? signs_there : signs_here;
       adopt(state, fold.fraction, fold.q);
       return true;
     }
   }
+  signs_ = context_.branches.signs(next.q);
   adopt(state, reached, JointVector(next.q - task_.scale().cwiseProduct(ahead * next.rate)));
   if (!converge(state)) state = next;
   return true;

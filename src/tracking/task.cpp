@@ -13,8 +13,8 @@ int bound_rows(Orientation orientation) {
   return orientation == Orientation::full ? 6 : orientation == Orientation::axis ? 5 : 3;
 }
 
-/// Rotation vector from `now` to `target` for errors far below a half turn; near zero the skew part is exact to third
-/// order and needs no square root.
+/// Rotation vector from `now` to `target` for errors far below a half turn; near zero the skew part is exact
+/// to third order and needs no square root.
 Vector3 rotation_error(const Matrix3& target, const Matrix3& now) {
   const Matrix3 r = target * now.transpose();
   const Vector3 skew(r(2, 1) - r(1, 2), r(0, 2) - r(2, 0), r(1, 0) - r(0, 1));
@@ -78,7 +78,8 @@ void Task<N>::evaluate(int piece, TaskState<N>& state) const {
     chain_.template scaled_jacobian<Eigen::Dynamic>(state.chain, full);
     state.jacobian.resize(rows_, joints());
     state.jacobian.template topRows<3>() = full.template topRows<3>();
-    if (orientation_ == Orientation::full) state.jacobian.template bottomRows<3>() = full.template bottomRows<3>();
+    if (orientation_ == Orientation::full)
+      state.jacobian.template bottomRows<3>() = full.template bottomRows<3>();
     if (orientation_ == Orientation::axis)
       state.jacobian.template bottomRows<2>() =
           state.target.pose.rotation.template leftCols<2>().transpose() * full.template bottomRows<3>();
@@ -111,7 +112,8 @@ TaskColumn<N> Task<N>::target_rate(const TaskState<N>& state) const {
 }
 
 template <int N>
-TaskColumn<N> Task<N>::second_order(const TaskState<N>& state, const JointColumn<N>& rate, double speed) const {
+TaskColumn<N> Task<N>::second_order(const TaskState<N>& state, const JointColumn<N>& rate,
+                                    double speed) const {
   const JointColumn<N> natural = scale_.cwiseProduct(rate);
   const Vector6 twist = chain_.template bias<N>(state.chain, natural) - speed * speed * state.target.second;
   TaskColumn<N> out = bind(state, twist);
@@ -145,8 +147,9 @@ double Task<N>::target_third(int piece) const {
                     orientation_ == Orientation::free ? 0.0 : b.third_angular);
 }
 
-/// Negative gradient of H = 1/2 sum ((q - middle) / half range)^2 - w ln sqrt det(J J^T), scaled joints: towards the
-/// middle of the limits (Liegeois 1977) and away from singularities (Yoshikawa 1985, manipulability).
+/// Negative gradient of H = 1/2 sum ((q - middle) / half range)^2 - w ln sqrt det(J J^T), scaled joints:
+/// towards the middle of the limits (Liegeois 1977) and away from singularities (Yoshikawa 1985,
+/// manipulability).
 template <int N>
 JointColumn<N> Task<N>::preference(const TaskState<N>& state) const {
   constexpr double singularity_weight = 0.1;
@@ -156,7 +159,8 @@ JointColumn<N> Task<N>::preference(const TaskState<N>& state) const {
   for (int i = 0; i < n; ++i) {
     const Joint& joint = arm_.joints[static_cast<std::size_t>(i)];
     const double half = 0.5 * (joint.upper - joint.lower);
-    out[i] = joint.continuous ? 0.0 : -(state.q[i] - 0.5 * (joint.lower + joint.upper)) * scale_[i] / (half * half);
+    out[i] = joint.continuous ? 0.0
+                              : -(state.q[i] - 0.5 * (joint.lower + joint.upper)) * scale_[i] / (half * half);
   }
   // d/dq_i ln sqrt det(J J^T) = trace(J^+ dJ/dq_i); dJ/dq_i column by column from the axes.
   const double scale = 1.0 / chain_.characteristic_length();
@@ -201,8 +205,8 @@ void Task<N>::derivatives(int piece, TaskState<N>& state) const {
   state.rate_rate = -(state.inverse * second_order(state, state.rate, 1.0));
   if constexpr (N != 6) {
     if (joints() > rows_) {
-      // The flow q' = g(q, s) of a redundant arm: q'' = dg/ds + dg/dq q' by a central difference along the flow. The
-      // step balances truncation against rounding at about 1e-10 of the rate.
+      // The flow q' = g(q, s) of a redundant arm: q'' = dg/ds + dg/dq q' by a central difference along the
+      // flow. The step balances truncation against rounding at about 1e-10 of the rate.
       const double reach = 1e-5 / std::max(1e-12, state.rate.norm());
       TaskState<N> ahead = state;
       TaskState<N> behind = state;
@@ -222,9 +226,10 @@ void Task<N>::derivatives(int piece, TaskState<N>& state) const {
 
 template <int N>
 void Task<N>::bound_bend(TaskState<N>& state) const {
-  // Column j of the Jacobian changes with joint i by z_min x (z_max x r_max) (linear) and z_i x z_j / 2 (angular, in
-  // the chart in which the proof is made; docs/methods.md), where max is the joint nearer the tool: at most |z_max x
-  // r_max| and 1/2. Inside the ball the levers grow by at most sqrt(n) * radius * the longest.
+  // Column j of the Jacobian changes with joint i by z_min x (z_max x r_max) (linear) and z_i x z_j / 2
+  // (angular, in the chart in which the proof is made; docs/methods.md), where max is the joint nearer the
+  // tool: at most |z_max x r_max| and 1/2. Inside the ball the levers grow by at most sqrt(n) * radius * the
+  // longest.
   const int n = joints();
   const double scale = 1.0 / chain_.characteristic_length();
   double longest = 0;

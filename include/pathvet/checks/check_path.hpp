@@ -36,15 +36,17 @@ struct SegmentStart {
 class CheckObserver {
  public:
   virtual ~CheckObserver() = default;
-  /// Whether sample() wants to be called; without it the exact singular value of every sample is not computed.
+  /// Whether sample() wants to be called; without it the exact singular value of every sample is not
+  /// computed.
   [[nodiscard]] virtual bool wants_samples() const { return false; }
   virtual void sample(const TraceSample& /*sample*/) {}
-  /// Places between the samples that the report's figures come from: where a joint's position or speed or the smallest
-  /// singular value is extreme on the exact curve, and where the curve begins anew after a gap or a jump. They come
-  /// before the sample at the end of their step, in no order; residuals are not given. Called if wants_samples().
+  /// Places between the samples that the report's figures come from: where a joint's position or speed or the
+  /// smallest singular value is extreme on the exact curve, and where the curve begins anew after a gap or a
+  /// jump. They come before the sample at the end of their step, in no order; residuals are not given. Called
+  /// if wants_samples().
   virtual void extreme(const TraceSample& /*sample*/) {}
-  /// Every segment as it begins, then its steps: the pieces of the joints' exact curve, between whose ends the sampler
-  /// gives any place. Both are good for the call alone.
+  /// Every segment as it begins, then its steps: the pieces of the joints' exact curve, between whose ends
+  /// the sampler gives any place. Both are good for the call alone.
   virtual void begin_segment(const SegmentStart& /*start*/) {}
   virtual void step(int /*segment*/, const Step& /*step*/, const StepSampler& /*sampler*/) {}
   /// Share of the path's segments done, 0 to 1. Returns false to stop the check.
@@ -52,8 +54,8 @@ class CheckObserver {
 };
 
 /// The main job: tracks the path in the cell from its start and checks it to its end.
-/// Faults (in the path file's places) are what only the forward map can tell: a taught configuration that misses its
-/// pose, a start pose that no configuration reaches.
+/// Faults (in the path file's places) are what only the forward map can tell: a taught configuration that
+/// misses its pose, a start pose that no configuration reaches.
 [[nodiscard]] Reading<PathResult> check_path(const Path& path, const Cell& cell, const CheckOptions& options,
                                              CheckObserver* observer = nullptr);
 

@@ -12,10 +12,10 @@ struct StartTrial {
   JointVector joints;  ///< rad or mm
   std::string branch;
   int errors = 0, warnings = 0;
-  double peak_ratio = 0;                      ///< greatest |joint speed| / limit; infinite where unbounded
+  double peak_ratio = 0;  ///< greatest |joint speed| / limit; infinite where unbounded
   std::string peak_joint;
-  double limit_margin_share = 0;              ///< smallest distance to a limit, as a share of the joint's range
-  std::string limit_margin_joint;             ///< empty where no joint has limits
+  double limit_margin_share = 0;   ///< smallest distance to a limit, as a share of the joint's range
+  std::string limit_margin_joint;  ///< empty where no joint has limits
   std::optional<Code> first_error;
   int first_error_segment = 0;
 };
@@ -29,10 +29,12 @@ struct StartRanking {
   bool stopped = false;
 };
 
-/// Runs the whole path from every configuration of its start pose that lies inside the limits, whole turns included
-/// (all, if none does), on `options.threads` threads. Ranked by errors, then warnings, then smallest speed ratio, then
-/// largest limit margin, then joint values. `proceed` is asked between runs with the share done; false stops.
-[[nodiscard]] Reading<StartRanking> rank_starts(const Path& path, const Cell& cell, const CheckOptions& options,
+/// Runs the whole path from every configuration of its start pose that lies inside the limits, whole turns
+/// included (all, if none does), on `options.threads` threads. Ranked by errors, then warnings, then smallest
+/// speed ratio, then largest limit margin, then joint values. `proceed` is asked between runs with the share
+/// done; false stops.
+[[nodiscard]] Reading<StartRanking> rank_starts(const Path& path, const Cell& cell,
+                                                const CheckOptions& options,
                                                 const std::function<bool(double)>& proceed = {});
 
 }  // namespace pathvet

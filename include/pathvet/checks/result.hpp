@@ -12,13 +12,13 @@ namespace pathvet {
 
 /// What a check is asked for. Internal units; the defaults are the contract's.
 struct CheckOptions {
-  double step_length = 1.0;                               ///< mm; samples are at most this far apart
-  double step_angle = 0.5 * radians_per_degree;           ///< rad
-  double limit_margin_angle = 3.0 * radians_per_degree;   ///< rad
-  double limit_margin_length = 10.0;                      ///< mm
-  double speed_margin = 0.85;                             ///< share of a joint's speed
-  double singular_below = 0.02;                           ///< smallest singular value of the scaled Jacobian
-  std::optional<double> reduced_speed;                    ///< mm/s; none: no arm-speed findings
+  double step_length = 1.0;                              ///< mm; samples are at most this far apart
+  double step_angle = 0.5 * radians_per_degree;          ///< rad
+  double limit_margin_angle = 3.0 * radians_per_degree;  ///< rad
+  double limit_margin_length = 10.0;                     ///< mm
+  double speed_margin = 0.85;                            ///< share of a joint's speed
+  double singular_below = 0.02;                          ///< smallest singular value of the scaled Jacobian
+  std::optional<double> reduced_speed;                   ///< mm/s; none: no arm-speed findings
   int threads = 1;
 
   /// Every fault of these values, in words of the command line; empty if they are usable.
@@ -41,7 +41,7 @@ struct SegmentResult {
   int index = 0;  ///< counts from 1
   std::string from, to;
   Move move = Move::linear;
-  SourcePlace place;  ///< of the waypoint that the segment ends at
+  SourcePlace place;    ///< of the waypoint that the segment ends at
   double length = 0;    ///< mm, of the curve really travelled
   double turn = 0;      ///< rad
   double duration = 0;  ///< s, without the dwell
@@ -53,16 +53,17 @@ struct SegmentResult {
   std::optional<double> min_singular_value;
   std::optional<double> limit_margin;  ///< smallest distance to a limit; negative beyond it
   int limit_margin_axis = -1;
-  /// Greatest constant programmed speed at which no joint speed is broken: mm/s, rad/s for a turn on the spot, share
-  /// (0 to 1) for a joint move. None where nothing bounds it, or no speed holds.
+  /// Greatest constant programmed speed at which no joint speed is broken: mm/s, rad/s for a turn on the
+  /// spot, share (0 to 1) for a joint move. None where nothing bounds it, or no speed holds.
   std::optional<double> highest_speed;
   bool turn_on_the_spot = false;
   double peak_tcp_speed = 0;    ///< mm/s
   double peak_point_speed = 0;  ///< mm/s, of the fastest joint centre
   std::string peak_point;       ///< its name
   std::vector<int> findings;    ///< indices into PathResult::findings
-  std::vector<double> ratio_profile;  ///< worst speed ratio in equal stretches of the fraction, for a strip in the text
-  std::optional<JointVector> drift;   ///< end less begin where the segments before close a loop; none: no loop
+  std::vector<double>
+      ratio_profile;  ///< worst speed ratio in equal stretches of the fraction, for a strip in the text
+  std::optional<JointVector> drift;  ///< end less begin where the segments before close a loop; none: no loop
 };
 
 /// All that is known of one path after a check. Findings are ordered by segment, begin, code, axis.

@@ -32,9 +32,9 @@ struct ChainState {
   }
 };
 
-/// An arm with a tool on its flange, made ready for the forward map: the fixed placements between the motions are
-/// merged, so that the TCP's pose is fixed[0] M(q_0) fixed[1] M(q_1) ... fixed[n], each M about or along z.
-/// Const after construction; safe to share between threads.
+/// An arm with a tool on its flange, made ready for the forward map: the fixed placements between the motions
+/// are merged, so that the TCP's pose is fixed[0] M(q_0) fixed[1] M(q_1) ... fixed[n], each M about or along
+/// z. Const after construction; safe to share between threads.
 class Chain {
  public:
   explicit Chain(const Arm& arm, const Pose& tool = {});
@@ -52,13 +52,14 @@ class Chain {
   template <int N>
   void jacobian(const ChainState<N>& state, JacobianMatrix<N>& out) const;
 
-  /// The scaled Jacobian, free of units: linear rows divided by the characteristic length and, so that a prismatic
-  /// joint counts in the same measure, prismatic columns multiplied by it. Its singular values are what the report
-  /// calls singular values.
+  /// The scaled Jacobian, free of units: linear rows divided by the characteristic length and, so that a
+  /// prismatic joint counts in the same measure, prismatic columns multiplied by it. Its singular values are
+  /// what the report calls singular values.
   template <int N>
   void scaled_jacobian(const ChainState<N>& state, JacobianMatrix<N>& out) const;
 
-  /// (d/ds J) q' for q' = `rates` (natural units): what the TCP accelerates by when the joints don't. mm, rad.
+  /// (d/ds J) q' for q' = `rates` (natural units): what the TCP accelerates by when the joints don't. mm,
+  /// rad.
   template <int N>
   [[nodiscard]] Vector6 bias(const ChainState<N>& state, const JointColumn<N>& rates) const;
 
@@ -68,7 +69,8 @@ class Chain {
   [[nodiscard]] Jacobian scaled_jacobian(const JointVector& q) const;
 
   /// Positions (mm, world) of the base, every joint's origin and the TCP: the arm's skeleton, n + 2 points.
-  [[nodiscard]] Eigen::Matrix<double, 3, Eigen::Dynamic, 0, 3, max_joints + 2> skeleton(const JointVector& q) const;
+  [[nodiscard]] Eigen::Matrix<double, 3, Eigen::Dynamic, 0, 3, max_joints + 2> skeleton(
+      const JointVector& q) const;
 
   [[nodiscard]] const Pose& fixed(int index) const { return fixed_[static_cast<std::size_t>(index)]; }
 

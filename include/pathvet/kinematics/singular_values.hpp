@@ -5,14 +5,16 @@
 
 namespace pathvet {
 
-/// The scaled Jacobian's bound rows: all six, position and two directions across the tool's z axis, or position alone.
+/// The scaled Jacobian's bound rows: all six, position and two directions across the tool's z axis, or
+/// position alone.
 [[nodiscard]] Eigen::Matrix<double, Eigen::Dynamic, Eigen::Dynamic, 0, 6, max_joints> bound_jacobian(
     const Chain& chain, const JointVector& q, Orientation orientation);
 
-/// The smallest of the min(rows, joints) singular values of bound_jacobian, exact to rounding (about 1e-15 of the largest,
-/// so at 0 too): by repeated squaring of (J J^T)^-1 with a two-sided bound for six joints away from singularities, by an
-/// SVD otherwise.
-[[nodiscard]] double smallest_singular_value(const Chain& chain, const JointVector& q, Orientation orientation);
+/// The smallest of the min(rows, joints) singular values of bound_jacobian, exact to rounding (about 1e-15 of
+/// the largest, so at 0 too): by repeated squaring of (J J^T)^-1 with a two-sided bound for six joints away
+/// from singularities, by an SVD otherwise.
+[[nodiscard]] double smallest_singular_value(const Chain& chain, const JointVector& q,
+                                             Orientation orientation);
 
 /// Lower bound of the smallest singular value from the matrix' inverse W: (sum of sigma^-4)^(-1/4), that is
 /// ||W^T W||_F^(-1/2); at most a factor 6^(1/4) below it, and close where the second smallest is well apart.
@@ -21,8 +23,9 @@ namespace pathvet {
 /// The smallest singular value with its vectors.
 struct SingularDirection {
   double value = 0;
-  JointVector joints;                  ///< right singular vector; scaled joints, unit length
-  Vector6 motion = Vector6::Zero();    ///< left singular vector in the world, unbound directions zero; unit length
+  JointVector joints;  ///< right singular vector; scaled joints, unit length
+  Vector6 motion =
+      Vector6::Zero();  ///< left singular vector in the world, unbound directions zero; unit length
 };
 [[nodiscard]] SingularDirection smallest_singular_direction(const Chain& chain, const JointVector& q,
                                                             Orientation orientation);

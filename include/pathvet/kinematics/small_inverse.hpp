@@ -5,11 +5,12 @@
 
 namespace pathvet {
 
-/// Inverse of a small square matrix by Gauss-Jordan elimination with partial pivoting, unrolled by the compiler: for six
-/// rows a third of the time of a blocked factorisation, with the same error bound. False (and `out` undefined) where a
-/// pivot is exactly zero or not finite.
+/// Inverse of a small square matrix by Gauss-Jordan elimination with partial pivoting, unrolled by the
+/// compiler: for six rows a third of the time of a blocked factorisation, with the same error bound. False
+/// (and `out` undefined) where a pivot is exactly zero or not finite.
 template <int N>
-[[nodiscard]] bool small_inverse(const Eigen::Matrix<double, N, N>& matrix, Eigen::Matrix<double, N, N>& out) {
+[[nodiscard]] bool small_inverse(const Eigen::Matrix<double, N, N>& matrix,
+                                 Eigen::Matrix<double, N, N>& out) {
   using RowMajor = Eigen::Matrix<double, N, N, Eigen::RowMajor>;
   RowMajor a = matrix;
   RowMajor b = RowMajor::Identity();

@@ -6,27 +6,29 @@
 
 namespace pathvet {
 
-/// Turns the waypoints of a path into motions, one segment at a time. What needs the forward map comes in from outside:
-/// the poses that joints lead to, and moving frames.
+/// Turns the waypoints of a path into motions, one segment at a time. What needs the forward map comes in
+/// from outside: the poses that joints lead to, and moving frames.
 class MotionPlan {
  public:
   struct Sources {
     /// Pose in the world of waypoint i's TCP at its taught joints.
     std::function<Pose(int waypoint)> taught_pose;
-    /// The frame of waypoint `waypoint` while its segment runs, where a positioner carries it; null otherwise.
+    /// The frame of waypoint `waypoint` while its segment runs, where a positioner carries it; null
+    /// otherwise.
     std::function<std::shared_ptr<const MovingFrame>(int waypoint)> moving_frame;
   };
 
   MotionPlan(const Path& path, const Cell& cell, Sources sources);
 
-  /// The Cartesian segment that ends at waypoint `waypoint` (>= 1). `start`: pose in the world of this segment's tool
-  /// where it is not the programmed one (after a waypoint whose orientation was left free).
+  /// The Cartesian segment that ends at waypoint `waypoint` (>= 1). `start`: pose in the world of this
+  /// segment's tool where it is not the programmed one (after a waypoint whose orientation was left free).
   [[nodiscard]] SegmentMotion segment(int waypoint, const std::optional<Pose>& start = {}) const;
 
   /// Pose in the world that waypoint i programmes for its own tool: its pose, else that of its taught joints.
   [[nodiscard]] Pose programmed(int waypoint) const;
 
-  /// How far a Cartesian segment's orientation turns (rad), and whether a circular one's points carry a circle.
+  /// How far a Cartesian segment's orientation turns (rad), and whether a circular one's points carry a
+  /// circle.
   struct Shape {
     double turn = 0;
     bool is_arc = true;

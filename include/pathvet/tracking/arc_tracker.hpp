@@ -8,10 +8,10 @@
 
 namespace pathvet {
 
-/// Follows the solution curve near singularities by its arc length in (joints, fraction) instead of the fraction: the
-/// curve is smooth in arc length where it swings fast (a near miss) and where it turns back (a fold). Keller's
-/// pseudo-arc-length continuation; every step carries a continuity proof. For arms with at most as many joints as bound
-/// directions.
+/// Follows the solution curve near singularities by its arc length in (joints, fraction) instead of the
+/// fraction: the curve is smooth in arc length where it swings fast (a near miss) and where it turns back (a
+/// fold). Keller's pseudo-arc-length continuation; every step carries a continuity proof. For arms with at
+/// most as many joints as bound directions.
 class ArcTracker {
  public:
   using Dynamic = Task<Eigen::Dynamic>;
@@ -24,19 +24,19 @@ class ArcTracker {
   struct Place {
     TaskState<Eigen::Dynamic> task;
     Unknowns y;
-    Unknowns tangent;    ///< unit
-    Unknowns curvature;  ///< d tangent / d arc length
-    Matrix matrix;       ///< of the linearised task: scaled Jacobian, then minus the target's rate
-    Matrix left, right;  ///< its singular vectors
-    Rows singular;       ///< its singular values, descending
+    Unknowns tangent;       ///< unit
+    Unknowns curvature;     ///< d tangent / d arc length
+    Matrix matrix;          ///< of the linearised task: scaled Jacobian, then minus the target's rate
+    Matrix left, right;     ///< its singular vectors
+    Rows singular;          ///< its singular values, descending
     double regularity = 0;  ///< the smallest that counts; 0 where two solution curves meet
     double bend = 0, bend_second = 0;
   };
 
   ArcTracker(const Dynamic& task, int piece);
 
-  /// Takes a place on the curve as the new origin; the tangent is the one with a growing (or, with `backwards`, falling)
-  /// fraction.
+  /// Takes a place on the curve as the new origin; the tangent is the one with a growing (or, with
+  /// `backwards`, falling) fraction.
   void start(double fraction, const JointVector& q, bool backwards = false);
   /// The same with a given sense of the tangent (its inner product with `sense` is positive).
   void start(double fraction, const JointVector& q, const Unknowns& sense);
@@ -49,8 +49,8 @@ class ArcTracker {
   void at(const Step& step, double t, Node& out) const;
   [[nodiscard]] double unit() const { return unit_; }
 
-  /// Where the curve, followed from the current place, nearly meets another one: the place at which the linearised task
-  /// loses rank, reached by the smallest change of the target.
+  /// Where the curve, followed from the current place, nearly meets another one: the place at which the
+  /// linearised task loses rank, reached by the smallest change of the target.
   struct Meeting {
     double fraction = 0;
     Unknowns y;
@@ -61,8 +61,9 @@ class ArcTracker {
   };
   [[nodiscard]] std::optional<Meeting> meeting() const;
 
-  /// Jumps to the place that lies `beyond` further along `meeting.ahead`, corrected to the task. False if that fails.
-  [[nodiscard]] bool cross(const Meeting& meeting, double beyond, Step& step);
+  /// Jumps to the place that lies `beyond` further along `meeting.ahead`, corrected to the task; where that
+  /// would lie past the fraction `most`, to the place at that fraction. False if that fails.
+  [[nodiscard]] bool cross(const Meeting& meeting, double beyond, double most, Step& step);
   /// Ends at the meeting itself, which lies at the end of the piece.
   void stop_at(const Meeting& meeting, double fraction, Step& step) const;
 

@@ -13,8 +13,8 @@ namespace pathvet {
 
 /// How far the tracked joints may be from the asked pose (contract, section 5), and how near to a singular
 /// configuration a pass counts as exact: a tenth of it.
-inline constexpr double position_tolerance = 1e-3;                            // mm
-inline constexpr double orientation_tolerance = 1e-4 * radians_per_degree;    // rad
+inline constexpr double position_tolerance = 1e-3;                          // mm
+inline constexpr double orientation_tolerance = 1e-4 * radians_per_degree;  // rad
 inline constexpr double exact_position = 0.1 * position_tolerance;
 inline constexpr double exact_orientation = 0.1 * orientation_tolerance;
 
@@ -31,7 +31,8 @@ class TrackSink {
   virtual void regained(double fraction, const JointVector& at) = 0;
 };
 
-/// What a follower needs to know of the arm; const and shared by all segments with the same tool and orientation.
+/// What a follower needs to know of the arm; const and shared by all segments with the same tool and
+/// orientation.
 struct ArmContext {
   const Arm& arm;
   const Chain& chain;
@@ -41,12 +42,12 @@ struct ArmContext {
 };
 
 struct FollowSettings {
-  double step_length = 1.0;                        ///< mm
-  double step_angle = 0.5 * radians_per_degree;    ///< rad
+  double step_length = 1.0;                      ///< mm
+  double step_angle = 0.5 * radians_per_degree;  ///< rad
 };
 
-/// Follows one Cartesian segment continuously from a configuration: predictor, damped least-squares corrector, proven
-/// steps; arc length near singularities; past folds and jumps as the contract says.
+/// Follows one Cartesian segment continuously from a configuration: predictor, damped least-squares
+/// corrector, proven steps; arc length near singularities; past folds and jumps as the contract says.
 class Follower : public StepSampler {
  public:
   struct End {
@@ -54,8 +55,9 @@ class Follower : public StepSampler {
     bool reached = true;  ///< false: the segment's end is out of reach; q is the last configuration that held
     bool stopped = false;
   };
-  /// `reached`: whether `q` meets the segment's begin (false: the segment before ended out of reach). `branch`: the
-  /// signs of the branch that is followed, in and out: at a singular waypoint the joints alone can't tell it.
+  /// `reached`: whether `q` meets the segment's begin (false: the segment before ended out of reach).
+  /// `branch`: the signs of the branch that is followed, in and out: at a singular waypoint the joints alone
+  /// can't tell it.
   virtual End run(const JointVector& q, bool reached, std::string& branch, TrackSink& sink) = 0;
 };
 

@@ -6,16 +6,16 @@
 
 namespace pathvet {
 
-/// A place on the tracked curve with its exact derivatives by the step's own parameter t: the fraction itself, or, near
-/// singularities, the arc length of the curve in (joints, fraction).
+/// A place on the tracked curve with its exact derivatives by the step's own parameter t: the fraction
+/// itself, or, near singularities, the arc length of the curve in (joints, fraction).
 struct Node {
   double fraction = 0;
-  double fraction_rate = 1;       ///< d fraction / dt; 0 at a fold, where joint speeds grow without bound
+  double fraction_rate = 1;  ///< d fraction / dt; 0 at a fold, where joint speeds grow without bound
   double fraction_rate_rate = 0;
-  JointVector q;                  ///< rad or mm
-  JointVector rate;               ///< dq/dt
-  JointVector rate_rate;          ///< d2q/dt2
-  double singular_low = 0;        ///< lower bound of the smallest singular value
+  JointVector q;            ///< rad or mm
+  JointVector rate;         ///< dq/dt
+  JointVector rate_rate;    ///< d2q/dt2
+  double singular_low = 0;  ///< lower bound of the smallest singular value
 };
 
 /// The stretch between two neighbouring nodes, with bounds on what the exact curve may do in between.
@@ -23,7 +23,8 @@ struct Step {
   enum class Kind {
     fraction,     ///< t is the fraction
     arc,          ///< t is arc length
-    interpolated  ///< across an exact singularity: the curve is the quintic Hermite polynomial through both nodes
+    interpolated  ///< across an exact singularity: the curve is the quintic Hermite polynomial through both
+                  ///< nodes
   };
   Kind kind = Kind::fraction;
   int piece = 0;
@@ -31,8 +32,8 @@ struct Step {
   double fraction_unit = 1;  ///< arc steps: the fraction per unit of its share in the arc length
   Node begin, end;
   bool proven = false;  ///< continuity is proven: both ends lie on one smooth branch
-  // Bounds on the norm of the first three derivatives, by t, of the joints (scaled: prismatic over the characteristic
-  // length); of arc steps the fraction's share is included. Infinite where nothing is proven.
+  // Bounds on the norm of the first three derivatives, by t, of the joints (scaled: prismatic over the
+  // characteristic length); of arc steps the fraction's share is included. Infinite where nothing is proven.
   double rate_bound = std::numeric_limits<double>::infinity();
   double second_bound = std::numeric_limits<double>::infinity();
   double third_bound = std::numeric_limits<double>::infinity();
