@@ -4,13 +4,16 @@
 #include <spdlog/spdlog.h>
 
 #include <algorithm>
+#include <atomic>
 #include <boost/program_options/value_semantic.hpp>
 #include <memory>
+#include <mutex>
 #include <sstream>
 
 #include "commands/errors.hpp"
 #include "commands/log.hpp"
 #include "commands/outputs.hpp"
+#include "commands/parallel.hpp"
 #include "commands/progress.hpp"
 #include "commands/signals.hpp"
 #include "commands/terminal.hpp"
@@ -32,9 +35,9 @@ po::options_description check_options() {
       ("cell", po::value<std::string>()->value_name("FILE"),
        "the cell, instead of the one that the path names")  //
       ("json", po::value<std::string>()->value_name("FILE"),
-       "write the report as JSON (- is standard output)")                                               //
+       "write the report as JSON (- is standard output)")  //
       ("html", po::value<std::string>()->value_name("FILE"),
-       "write the report as one page with charts and a view of the arm")  //
+       "write the report as one page with charts and a view of the arm")                                //
       ("trace", po::value<std::string>()->value_name("FILE"), "write every sample of one path as CSV")  //
       ("quiet", "no text on standard output")                                                           //
       ("strict", "warnings count towards the verdict and the exit status");
@@ -43,17 +46,13 @@ po::options_description check_options() {
   return all;
 }
 
-/// Passes samples to the trace and the page's curves, and the progress to the bar; stops the check on a signal or when
-/// the trace can't be written any more.
+/// Passes samples to the trace and the page's curves, and the progress to the bar; stops the check on a
+/// signal or when the trace can't be written any more.
 class Watcher : public CheckObserver {
  public:
-  Watcher(ProgressBar& bar, Output* trace, CurveCollector* curves, const Arm& arm, std::size_t index,
+  Watcher(ProgressBar& bar, std::mutex& bar_mutex, Output* trace, CurveCollector* curves, const Arm& arm,
           std::size_t count)
-      : bar_(bar),
-        trace_(trace),
-        curves_(curves),
-        index_(static_cast<double>(index)),
-        count_(static_cast<double>(count)) {
+      : bar_(bar), bar_mutex_(bar_mutex), trace_(trace), curves_(curves), count_(static_cast<double>(count)) {
     if (trace) writer_.emplace(arm, trace->stream());
   }
 
@@ -69,16 +68,22 @@ class Watcher : public CheckObserver {
     if (curves_) curves_->begin_segment(start);
   }
   bool progress(double share) override {
-    bar_.show((index_ + share) / count_);
+    {
+      const std::lock_guard lock(bar_mutex_);
+      bar_.advance((share - share_) / count_);
+      share_ = share;
+    }
     return !stop_requested() && !(trace_ && trace_->failed());
   }
 
  private:
   ProgressBar& bar_;
+  std::mutex& bar_mutex_;
   Output* trace_;
   CurveCollector* curves_;
   std::optional<TraceWriter> writer_;
-  double index_, count_;
+  double count_;
+  double share_ = 0;
 };
 
 void append(std::vector<Fault>& all, const std::vector<Fault>& more) {
@@ -112,27 +117,44 @@ void check_cells(const CheckSettings& settings, const std::vector<PathAndCell>& 
   if (!problems.empty()) throw CallError("check", std::move(problems));
 }
 
-/// `curves` gets those of each path; null: nobody draws them.
+/// What came of one path.
+struct Checked {
+  Reading<PathResult> reading;
+  std::optional<PathCurves> curves;
+};
+
+/// `curves` gets those of each path; null: nobody draws them. The paths share the threads; results keep their
+/// order, so that the report is the same whatever their number.
 std::vector<PathResult> check_all(const CheckSettings& settings, const std::vector<PathAndCell>& inputs,
                                   Output* trace, std::vector<PathCurves>* curves) {
+  std::vector<Checked> checked(inputs.size());
+  ProgressBar bar(!settings.quiet);
+  std::mutex bar_mutex;
+  std::atomic<std::size_t> next = 0;
+  const auto work = [&] {
+    for (std::size_t i = next++; i < inputs.size() && !stop_requested(); i = next++) {
+      const auto& [path, cell] = inputs[i];
+      spdlog::info("checking {}", path.file);
+      std::optional<CurveCollector> collector;
+      if (curves) collector.emplace(path, cell, CurveCollector::most_values / inputs.size());
+      Watcher watcher(bar, bar_mutex, trace, collector ? &*collector : nullptr, cell.arm, inputs.size());
+      checked[i].reading = check_path(path, cell, settings.options, &watcher);
+      if (collector) checked[i].curves = collector->take();
+    }
+  };
+  in_parallel(static_cast<int>(
+                  std::min<std::size_t>(inputs.size(), static_cast<std::size_t>(settings.options.threads))),
+              work);
+  if (stop_requested()) throw Stopped();
   std::vector<PathResult> results;
   std::vector<Fault> faults;
-  ProgressBar bar(!settings.quiet);
-  for (std::size_t i = 0; i < inputs.size(); ++i) {
-    const auto& [path, cell] = inputs[i];
-    spdlog::info("checking {}", path.file);
-    std::optional<CurveCollector> collector;
-    if (curves) collector.emplace(path, cell, CurveCollector::most_values / inputs.size());
-    Watcher watcher(bar, trace, collector ? &*collector : nullptr, cell.arm, i, inputs.size());
-    Reading<PathResult> reading = check_path(path, cell, settings.options, &watcher);
-    if (stop_requested()) throw Stopped();
-    if (collector) curves->push_back(collector->take());
-    append(faults, reading.faults);
-    if (reading.value) {
-      spdlog::debug("{}: {} samples, {} findings", path.file, reading.value->samples,
-                    reading.value->findings.size());
-      results.push_back(std::move(*reading.value));
-    }
+  for (Checked& one : checked) {
+    append(faults, one.reading.faults);
+    if (one.curves) curves->push_back(std::move(*one.curves));
+    if (!one.reading.value) continue;
+    spdlog::debug("{}: {} samples, {} findings", one.reading.value->file, one.reading.value->samples,
+                  one.reading.value->findings.size());
+    results.push_back(std::move(*one.reading.value));
   }
   if (!faults.empty()) throw InputError(std::move(faults));
   return results;

@@ -25,6 +25,7 @@ ProgressBar::~ProgressBar() {
 }
 
 void ProgressBar::show(double share) {
+  share_ = share;
   if (!enabled_ || Clock::now() < next_) return;
   const int filled = static_cast<int>(std::clamp(share, 0.0, 1.0) * bar_columns);
   fmt::print(stderr, "\rchecking [{:#<{}}{:.<{}}] {:3.0f} %", "", filled, "", bar_columns - filled,

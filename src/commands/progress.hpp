@@ -13,12 +13,15 @@ class ProgressBar {
   ProgressBar& operator=(const ProgressBar&) = delete;
 
   void show(double share);
+  /// Adds to the share shown last.
+  void advance(double by) { show(share_ + by); }
 
  private:
   using Clock = std::chrono::steady_clock;
 
   bool enabled_;
   bool drawn_ = false;
+  double share_ = 0;
   Clock::time_point next_;
 };
 

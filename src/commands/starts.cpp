@@ -60,15 +60,19 @@ std::vector<OutputRequest> StartsSettings::outputs() const {
 }
 
 bool StartsSettings::wants_text() const {
-  return !quiet && std::ranges::none_of(outputs(), [](const OutputRequest& request) { return request.target == "-"; });
+  return !quiet &&
+         std::ranges::none_of(outputs(), [](const OutputRequest& request) { return request.target == "-"; });
 }
 
 std::string starts_help() {
   std::ostringstream text;
   text << "Usage: pathvet starts PATH [options]\n\n"
-          "Runs the whole path from every configuration of its start pose that lies inside the limits, whole turns\n"
-          "included, and ranks them: fewest errors, then warnings, then smallest joint speed ratio, then most room.\n"
-          "Exit status: 0 the best start (or the one taken) has no error, 1 it has, 2 the call or an input file is\n"
+          "Runs the whole path from every configuration of its start pose that lies inside the limits, whole "
+          "turns\n"
+          "included, and ranks them: fewest errors, then warnings, then smallest joint speed ratio, then "
+          "most room.\n"
+          "Exit status: 0 the best start (or the one taken) has no error, 1 it has, 2 the call or an input "
+          "file is\n"
           "wrong, 3 not done.\n\n"
           "Examples:\n"
           "  pathvet starts trim.xml\n"
@@ -129,7 +133,8 @@ int run_starts(const StartsSettings& settings) {
   if (!ranked.value) throw InputError(std::move(ranked.faults));
   const StartRanking& ranking = *ranked.value;
   if (settings.take && static_cast<std::size_t>(*settings.take) > ranking.trials.size())
-    throw CallError("starts", {fmt::format("--take {}: there are {} starts", *settings.take, ranking.trials.size())});
+    throw CallError("starts",
+                    {fmt::format("--take {}: there are {} starts", *settings.take, ranking.trials.size())});
 
   std::vector<std::unique_ptr<Output>> files;
   if (settings.json) {

@@ -21,8 +21,9 @@ constexpr int list_decimals = 3;
 std::string joints_text(const StartRanking& ranking, const JointVector& joints) {
   std::vector<std::string> values;
   for (std::size_t i = 0; i < ranking.joint_types.size(); ++i) {
-    values.push_back(fixed(
-        to_user(joints[static_cast<Eigen::Index>(i)], position_quantity(ranking.joint_types[i])), list_decimals));
+    values.push_back(
+        fixed(to_user(joints[static_cast<Eigen::Index>(i)], position_quantity(ranking.joint_types[i])),
+              list_decimals));
   }
   return fmt::format("{}", fmt::join(values, " "));
 }
@@ -30,13 +31,16 @@ std::string joints_text(const StartRanking& ranking, const JointVector& joints) 
 std::string result_text(const StartTrial& trial) {
   if (trial.errors == 0) return trial.warnings == 0 ? "clear" : counted(trial.warnings, "warning");
   std::string text = counted(trial.errors, "error");
-  if (trial.first_error) text += fmt::format(", first {} on segment {}", name(*trial.first_error), trial.first_error_segment);
+  if (trial.first_error)
+    text += fmt::format(", first {} on segment {}", name(*trial.first_error), trial.first_error_segment);
   return trial.warnings == 0 ? text : text + "; " + counted(trial.warnings, "warning");
 }
 
 std::string speed_text(const StartTrial& trial) {
   if (!std::isfinite(trial.peak_ratio)) return "unbounded";
-  return trial.peak_joint.empty() ? "0 %" : fmt::format("{} % {}", plain(100 * trial.peak_ratio, 3), trial.peak_joint);
+  return trial.peak_joint.empty()
+             ? "0 %"
+             : fmt::format("{} % {}", plain(100 * trial.peak_ratio, 3), trial.peak_joint);
 }
 
 }  // namespace
@@ -53,7 +57,9 @@ void write_starts_text(const StartRanking& ranking, std::ostream& out, const Tex
   } else {
     std::vector<TableRow> rows;
     for (const StartTrial& trial : ranking.trials) {
-      const Colour colour = trial.errors > 0 ? Colour::bad : trial.warnings > 0 ? Colour::doubtful : Colour::good;
+      const Colour colour = trial.errors > 0     ? Colour::bad
+                            : trial.warnings > 0 ? Colour::doubtful
+                                                 : Colour::good;
       rows.push_back({{fmt::format("{}", rows.size() + 1), Colour::none, true},
                       {joints_text(ranking, trial.joints)},
                       {trial.branch},
@@ -61,16 +67,17 @@ void write_starts_text(const StartRanking& ranking, std::ostream& out, const Tex
                       {speed_text(trial)},
                       {trial.limit_margin_joint.empty()
                            ? "no limits"
-                           : fmt::format("{} % {}", plain(100 * trial.limit_margin_share, 3), trial.limit_margin_joint)}});
+                           : fmt::format("{} % {}", plain(100 * trial.limit_margin_share, 3),
+                                         trial.limit_margin_joint)}});
     }
     out << '\n';
     write_table(out,
-                {"#", fmt::format("{}", fmt::join(ranking.joint_names, " ")), "branch", "whole path", "top speed",
-                 "least room"},
+                {"#", fmt::format("{}", fmt::join(ranking.joint_names, " ")), "branch", "whole path",
+                 "top speed", "least room"},
                 rows, style);
     if (!ranking.complete)
-      write_paragraph(out, "",
-                      "The start pose has more configurations than can be listed: these stand for them.", style);
+      write_paragraph(
+          out, "", "The start pose has more configurations than can be listed: these stand for them.", style);
   }
   out << '\n';
   write_paragraph(out, "Caution: ", caution(), style);
