@@ -16,7 +16,10 @@ namespace {
 /// Below this regularity of the arc's linearised task a meeting with another solution curve is looked for. A
 /// pass that misses by the exact tolerance (about 1e-7 in scaled units) bottoms out near its square root.
 constexpr double suspicious_regularity = 4e-3;
-constexpr double meeting_reach = 0.1;  // scaled distance to the meeting that may be crossed in one step
+/// Scaled distance to a meeting that is crossed in one step. The curve that misses it by the exact tolerance e strays from
+/// the smooth one by about e / distance^2 in its rates, the quintic across by about (2 distance)^5: here both are near
+/// 1e-5.
+constexpr double meeting_reach = 0.04;
 constexpr int most_arc_steps = 200000;
 constexpr double least_arc_step = 1e-13;
 /// The solutions beyond a singular place are looked at this far ahead (scaled length of the target's motion):
