@@ -18,7 +18,9 @@ Json speed_json(const RetimedSegment& segment, double speed) {
   return in_unit(speed, segment.turn_on_the_spot ? Quantity::angular_speed : Quantity::linear_speed);
 }
 
-Json gap_json(double now, double bound) { return bound > 0 ? number(100 * (now / bound - 1)) : Json(nullptr); }
+Json gap_json(double now, double bound) {
+  return bound > 0 ? number(100 * Retiming::gap(now, bound)) : Json(nullptr);
+}
 
 Json segment_json(const Retiming& retiming, const RetimedSegment& segment, const Profile* profile) {
   Json out;
@@ -35,7 +37,8 @@ Json segment_json(const Retiming& retiming, const RetimedSegment& segment, const
   out["duration_s"] = number(segment.new_duration);
   out["bound_s"] = number(segment.bound);
   out["gap_percent"] = gap_json(segment.new_duration, segment.bound);
-  if (profile) out["time_optimal_s"] = number(profile->durations.at(static_cast<std::size_t>(segment.index - 1)));
+  if (profile)
+    out["time_optimal_s"] = number(profile->durations.at(static_cast<std::size_t>(segment.index - 1)));
   out["stretches"] = Json::array();
   for (const RetimedStretch& stretch : segment.stretches) {
     Json one;
@@ -44,7 +47,8 @@ Json segment_json(const Retiming& retiming, const RetimedSegment& segment, const
     one["end"] = number(stretch.end);
     one["speed"] = speed_json(segment, stretch.speed);
     one["duration_s"] = number(stretch.duration);
-    one["joint"] = stretch.limit < 0 ? Json(nullptr) : Json(retiming.limits.at(static_cast<std::size_t>(stretch.limit)));
+    one["joint"] =
+        stretch.limit < 0 ? Json(nullptr) : Json(retiming.limits.at(static_cast<std::size_t>(stretch.limit)));
     one["where"] = stretch.limit < 0 ? Json(nullptr) : number(stretch.where);
     out["stretches"].push_back(std::move(one));
   }

@@ -1,5 +1,6 @@
 #include <fmt/format.h>
 
+#include <algorithm>
 #include <cmath>
 #include <ostream>
 
@@ -17,9 +18,13 @@ using namespace reporting;
 constexpr std::size_t most_rows = 60;  // more nobody reads at a desk; the JSON has all
 constexpr double no_change = 5e-7;     // s
 
-std::string arrow(const TextStyle& style) { return style.unicode ? " → " : " -> "; }
+std::string arrow(const TextStyle& style) {
+  return style.unicode ? " → " : " -> ";
+}
 
-std::string seconds(double value) { return fixed(value, 4); }
+std::string seconds(double value) {
+  return fixed(value, 4);
+}
 
 /// How much more than the bound, in percent; what rounds to nothing is nothing.
 std::string gap_text(double now, double bound) {
@@ -39,7 +44,9 @@ const char* unit_of(const RetimedSegment& segment) {
 }
 
 /// Where on the segment as it was, in percent.
-std::string percent(double fraction) { return fixed(100 * fraction, 2); }
+std::string percent(double fraction) {
+  return fixed(100 * fraction, 2);
+}
 
 TableRow hopeless_row(const RetimedSegment& segment, const TextStyle& style) {
   return {{fmt::format("{}", segment.index), Colour::none, true},
@@ -59,15 +66,17 @@ void add_rows(std::vector<TableRow>& rows, const Retiming& retiming, const Retim
   std::string from = segment.from;
   for (const RetimedStretch& stretch : segment.stretches) {
     const std::string reason =
-        stretch.limit < 0 ? "as programmed"
-                          : fmt::format("{} at {} %", retiming.limits.at(static_cast<std::size_t>(stretch.limit)),
-                                        percent(stretch.where));
-    rows.push_back({{fmt::format("{}", segment.index), Colour::none, true},
-                    {from + arrow(style) + stretch.to},
-                    {percent(stretch.begin) + " to " + percent(stretch.end) + " %"},
-                    {plain(in_user_unit(segment, stretch.speed)) + ' ' + unit_of(segment), Colour::none, true},
-                    {reason},
-                    {seconds(stretch.duration), Colour::none, true}});
+        stretch.limit < 0
+            ? "as programmed"
+            : fmt::format("{} at {} %", retiming.limits.at(static_cast<std::size_t>(stretch.limit)),
+                          percent(stretch.where));
+    rows.push_back(
+        {{fmt::format("{}", segment.index), Colour::none, true},
+         {from + arrow(style) + stretch.to},
+         {percent(stretch.begin) + " to " + percent(stretch.end) + " %"},
+         {plain(in_user_unit(segment, stretch.speed)) + ' ' + unit_of(segment), Colour::none, true},
+         {reason},
+         {seconds(stretch.duration), Colour::none, true}});
     from = stretch.to;
   }
 }
@@ -88,7 +97,8 @@ void write_stretches(std::ostream& out, const Retiming& retiming, const TextStyl
     return;
   }
   write_table(out, {"#", "stretch", "of the segment", "speed", "set by", "s"}, rows, style);
-  if (left_out > 0) out << fmt::format("... and {} not shown: --json lists all.\n", counted(long(left_out), "segment"));
+  if (left_out > 0)
+    out << fmt::format("... and {} not shown: --json lists all.\n", counted(long(left_out), "segment"));
   out << '\n';
 }
 
@@ -97,13 +107,14 @@ void write_costs(std::ostream& out, const Retiming& retiming, const TextStyle& s
   std::vector<TableRow> rows;
   for (const RetimedSegment& segment : retiming.segments) {
     if (!segment.changed() || rows.size() >= most_rows) continue;
-    rows.push_back({{fmt::format("{}", segment.index), Colour::none, true},
-                    {segment.from + arrow(style) + segment.to},
-                    {plain(in_user_unit(segment, segment.old_speed)) + ' ' + unit_of(segment), Colour::none, true},
-                    {seconds(segment.old_duration), Colour::none, true},
-                    {seconds(segment.new_duration), Colour::none, true},
-                    {seconds(segment.bound), Colour::none, true},
-                    {gap_text(segment.new_duration, segment.bound), Colour::none, true}});
+    rows.push_back(
+        {{fmt::format("{}", segment.index), Colour::none, true},
+         {segment.from + arrow(style) + segment.to},
+         {plain(in_user_unit(segment, segment.old_speed)) + ' ' + unit_of(segment), Colour::none, true},
+         {seconds(segment.old_duration), Colour::none, true},
+         {seconds(segment.new_duration), Colour::none, true},
+         {seconds(segment.bound), Colour::none, true},
+         {gap_text(segment.new_duration, segment.bound), Colour::none, true}});
   }
   if (rows.empty()) return;
   write_table(out, {"#", "segment", "programmed", "s before", "s now", "s bound", "gap"}, rows, style);
@@ -112,14 +123,14 @@ void write_costs(std::ostream& out, const Retiming& retiming, const TextStyle& s
 
 void write_totals(std::ostream& out, const RetimeReport& report, const TextStyle& style) {
   const double before = report.before.duration;
-  write_paragraph(out, "cycle before   ", seconds(before) + " s, with " +
-                  counted(report.before.count(Level::error), "error"), style);
+  write_paragraph(out, "cycle before   ",
+                  seconds(before) + " s, with " + counted(report.before.count(Level::error), "error"), style);
   if (report.retiming) {
     const Retiming& r = *report.retiming;
     const double change = r.after.duration - before;
-    const std::string changed = std::abs(change) < no_change
-                                    ? std::string("unchanged")
-                                    : fmt::format("{}{} %", change > 0 ? "+" : "", fixed(100 * change / before, 2));
+    const std::string changed = std::abs(change) < no_change ? std::string("unchanged")
+                                                             : fmt::format("{}{} %", change > 0 ? "+" : "",
+                                                                           fixed(100 * change / before, 2));
     write_paragraph(out, "cycle now      ",
                     fmt::format("{} s ({}), with {}; {}", seconds(r.after.duration), changed,
                                 counted(r.after.count(Level::error), "error"),
@@ -132,10 +143,12 @@ void write_totals(std::ostream& out, const RetimeReport& report, const TextStyle
                     style);
   }
   if (report.profile) {
-    write_paragraph(out, "time-optimal   ",
-                    fmt::format("{} s with joint accelerations too, at rest where the path stops the arm ({} grid points)",
-                                seconds(report.profile->duration), report.profile->grid_points),
-                    style);
+    write_paragraph(
+        out, "time-optimal   ",
+        fmt::format(
+            "{} s with joint accelerations too, at rest where the path stops the arm ({} grid points)",
+            seconds(report.profile->duration), report.profile->grid_points),
+        style);
     for (const std::string& note : report.profile->notes) write_paragraph(out, "note: ", note, style);
   }
 }
@@ -146,8 +159,9 @@ void write_left(std::ostream& out, const PathResult& checked, const TextStyle& s
   for (const Finding& f : checked.findings) {
     if (level(f.code) != Level::error || lines.size() >= most_rows) continue;
     const SegmentResult& segment = segment_of(checked, f);
-    lines.push_back(fmt::format("{}{}{}: {}{}", segment.from, arrow(style), segment.to, name(f.code),
-                                f.axis < 0 ? "" : " " + axis_name(checked, f.axis)));
+    std::string line = fmt::format("{}{}{}: {}{}", segment.from, arrow(style), segment.to, name(f.code),
+                                   f.axis < 0 ? "" : " " + axis_name(checked, f.axis));
+    if (std::ranges::find(lines, line) == lines.end()) lines.push_back(std::move(line));
   }
   if (lines.empty()) return;
   write_paragraph(out, "", "What no speed helps against (pathvet check tells more):", style);

@@ -15,7 +15,8 @@ namespace pathvet {
 namespace {
 
 constexpr std::string_view byte_order_mark = "\xEF\xBB\xBF";
-constexpr std::array<std::string_view, 3> orientation_names = {"quaternion", "roll-pitch-yaw", "rotation-vector"};
+constexpr std::array<std::string_view, 3> orientation_names = {"quaternion", "roll-pitch-yaw",
+                                                               "rotation-vector"};
 constexpr std::array<std::string_view, 5> inherited = {"move", "tool", "frame", "turn-rate", "orientation"};
 
 std::string numbers(std::initializer_list<double> values) {
@@ -24,9 +25,12 @@ std::string numbers(std::initializer_list<double> values) {
   return text;
 }
 
-std::string position_text(const Vector3& p) { return numbers({p.x(), p.y(), p.z()}); }
+std::string position_text(const Vector3& p) {
+  return numbers({p.x(), p.y(), p.z()});
+}
 
-/// Spelt as `spelling` says, where that has a value (roll-pitch-yaw has none that is well defined at a pitch of 90°).
+/// Spelt as `spelling` says, where that has a value (roll-pitch-yaw has none that is well defined at a pitch
+/// of 90°).
 std::string orientation_text(const Matrix3& r, std::string_view spelling) {
   constexpr double degree = radians_per_degree;
   constexpr double least_cosine = 1e-6;
@@ -53,7 +57,8 @@ std::string external_text(const Cell& cell, std::size_t positioner, const JointV
     text += (i == 0 ? "" : " ") + file_number(angle ? value / radians_per_degree : value);
   }
   std::string name;
-  for (char c : p.name) name += c == '&' ? "&amp;" : c == '<' ? "&lt;" : c == '"' ? "&quot;" : std::string(1, c);
+  for (char c : p.name)
+    name += c == '&' ? "&amp;" : c == '<' ? "&lt;" : c == '"' ? "&quot;" : std::string(1, c);
   return fmt::format("<external positioner=\"{}\">{}</external> ", name, text);
 }
 
@@ -76,7 +81,9 @@ std::string file_number_below(double value) {
   }
 }
 
-std::optional<std::string> read_text(const std::string& file) { return xml::load_file(file).text; }
+std::optional<std::string> read_text(const std::string& file) {
+  return xml::load_file(file).text;
+}
 
 PathRewriter::PathRewriter(std::string text) : text_(std::move(text)) {
   has_byte_order_mark_ = std::string_view(text_).starts_with(byte_order_mark);

@@ -15,13 +15,14 @@ namespace pathvet {
 /// The bytes of a file; none if it can't be read.
 [[nodiscard]] std::optional<std::string> read_text(const std::string& file);
 
-/// Changes a path file's text where it is asked to and nowhere else: comments, layout, the order of attributes, line
-/// ends and a byte order mark stay. Edits are collected and applied together by text().
+/// Changes a path file's text where it is asked to and nowhere else: comments, layout, the order of
+/// attributes, line ends and a byte order mark stay. Edits are collected and applied together by text().
 class PathRewriter {
  public:
-  /// A waypoint to be put before another one, whose settings (move, tool, frame, turn-rate, orientation) it takes over.
+  /// A waypoint to be put before another one, whose settings (move, tool, frame, turn-rate, orientation) it
+  /// takes over.
   struct Insertion {
-    std::string suffix;  ///< its id is that of the other one with this behind it
+    std::string suffix;                             ///< its id is that of the other one with this behind it
     std::map<std::string, std::string> attributes;  ///< in place of the other one's, or besides them
     Pose pose;                                      ///< in the other one's frame
     bool same_orientation = false;                  ///< spelt exactly as in the other one's pose
@@ -74,7 +75,8 @@ class PathRewriter {
   std::vector<Edit> edits_;
 };
 
-/// A number as it is written into a path file: at most 15 significant digits, so that it reads back as written.
+/// A number as it is written into a path file: at most 15 significant digits, so that it reads back as
+/// written.
 [[nodiscard]] std::string file_number(double value);
 
 /// `value` (> 0) cut, never rounded up, to six significant digits: a speed that has to hold.
