@@ -8,16 +8,17 @@
 
 #include "pathvet/checks/check_path.hpp"
 
-// The comparison that docs/methods.md, section 13, prints: from how many start configurations does an iteration reach a
-// pose of the planar arm with two joints? That smaller damping and larger step factors shrink the share, and that the
-// stretched and the folded arm is where the pseudo-inverse fails, is common practice, no source.
+// The comparison that docs/methods.md, section 13, prints: from how many start configurations does an
+// iteration reach a pose of the planar arm with two joints? That smaller damping and larger step factors
+// shrink the share, and that the stretched and the folded arm is where the pseudo-inverse fails, is common
+// practice, no source.
 
 namespace pathvet {
 namespace {
 
 constexpr double first_link = 600, second_link = 400;  // mm
 constexpr double reach = first_link + second_link;
-constexpr int grid = 72;          // starts a joint: every 5 degrees, the stretched and the folded arm among them
+constexpr int grid = 72;  // starts a joint: every 5 degrees, the stretched and the folded arm among them
 constexpr int tracked_grid = 24;  // every 15 degrees
 
 Arm planar_arm() {
@@ -43,15 +44,18 @@ Eigen::Vector2d tip(const Eigen::Vector2d& q) {
 
 Eigen::Matrix2d jacobian(const Eigen::Vector2d& q) {
   Eigen::Matrix2d j;
-  j << -first_link * std::sin(q[0]) - second_link * std::sin(q[0] + q[1]), -second_link * std::sin(q[0] + q[1]),
-      first_link * std::cos(q[0]) + second_link * std::cos(q[0] + q[1]), second_link * std::cos(q[0] + q[1]);
+  j << -first_link * std::sin(q[0]) - second_link * std::sin(q[0] + q[1]),
+      -second_link * std::sin(q[0] + q[1]), first_link * std::cos(q[0]) + second_link * std::cos(q[0] + q[1]),
+      second_link * std::cos(q[0] + q[1]);
   return j;
 }
 
-Eigen::Vector2d start(int i, int k, int of) { return {2 * pi * i / of - pi, 2 * pi * k / of - pi}; }
+Eigen::Vector2d start(int i, int k, int of) {
+  return {2 * pi * i / of - pi, 2 * pi * k / of - pi};
+}
 
-/// Share of the starts from which steps come within 1e-3 mm of the target: at most 200 of them, none longer than half a
-/// turn (an arm thrown that far is lost, wherever it comes to rest).
+/// Share of the starts from which steps come within 1e-3 mm of the target: at most 200 of them, none longer
+/// than half a turn (an arm thrown that far is lost, wherever it comes to rest).
 template <typename Step>
 double share_reached(const Eigen::Vector2d& target, Step step_from) {
   int reached = 0;
@@ -129,8 +133,9 @@ TEST_CASE("convergence from everywhere: pseudo-inverse, damped, tracked") {
   const double weak = damped_share(target, 0.01);
   const double none = damped_share(target, 1e-6);
   const double tracked = tracker_share(target);
-  MESSAGE("pseudo-inverse 0.1, 0.5, 1: ", slow, " ", half, " ", full, "; damped 0.3, 0.1, 0.01, 1e-6: ", strong, " ",
-          medium, " ", weak, " ", none, "; tracked: ", tracked);
+  MESSAGE("pseudo-inverse 0.1, 0.5, 1: ", slow, " ", half, " ", full,
+          "; damped 0.3, 0.1, 0.01, 1e-6: ", strong, " ", medium, " ", weak, " ", none,
+          "; tracked: ", tracked);
   CHECK(medium >= weak);
   CHECK(weak >= none);
   CHECK(strong > medium);
@@ -149,7 +154,8 @@ TEST_CASE("convergence from everywhere: pseudo-inverse, damped, tracked") {
     out << 100 * share << " %";
     return out.str();
   };
-  // Far from the target the iterations are chaotic: another compiler's rounding moves the share in the third digit.
+  // Far from the target the iterations are chaotic: another compiler's rounding moves the share in the third
+  // digit.
   constexpr double rounding = 0.005;
   const std::pair<double, double> rows[] = {{slow, 0.882},   {half, 0.647}, {full, 0.388}, {strong, 1.0},
                                             {medium, 0.640}, {weak, 0.390}, {none, 0.388}, {tracked, 1.0}};
@@ -160,10 +166,12 @@ TEST_CASE("convergence from everywhere: pseudo-inverse, damped, tracked") {
 }
 
 TEST_CASE("the stretched and the folded arm is where the pseudo-inverse fails") {
-  // Pulling a stretched arm straight inwards: the pseudo-inverse sees no way in and stands still, at any step factor.
+  // Pulling a stretched arm straight inwards: the pseudo-inverse sees no way in and stands still, at any step
+  // factor.
   const Eigen::Vector2d inwards(600, 0);
   Eigen::Vector2d q(0, 0);
-  const Eigen::Vector2d step = jacobian(q).completeOrthogonalDecomposition().solve(Eigen::Vector2d(inwards - tip(q)));
+  const Eigen::Vector2d step =
+      jacobian(q).completeOrthogonalDecomposition().solve(Eigen::Vector2d(inwards - tip(q)));
   CHECK(step.norm() < 1e-12);
 }
 

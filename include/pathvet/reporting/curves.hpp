@@ -41,7 +41,7 @@ class CurveThinner {
   void count();
 
   std::size_t most_rows_;
-  std::size_t span_ = 64;  // rows that go into a bucket
+  std::size_t span_ = 16;  // rows that go into a bucket
   std::size_t in_last_ = 0;
   std::size_t closed_rows_ = 0;  // rows in all buckets but the last
   bool thinning_ = false;

@@ -1,5 +1,9 @@
 #include "pathvet/reporting/html.hpp"
 
+#include <fmt/format.h>
+
+#include <array>
+#include <charconv>
 #include <ostream>
 #include <stdexcept>
 
@@ -14,11 +18,26 @@ namespace {
 
 using namespace reporting;
 
-/// A list of objects with the same members as one object of lists: the names stand only once.
-Json by_column(const Json& list) {
+/// As many digits of a number as the page shows, and some more.
+Json shortened(const Json& value) {
+  if (!value.is_number_float()) return value;
+  const std::string text = fmt::format("{:.7g}", value.get<double>());
+  double out = 0;
+  std::from_chars(text.data(), text.data() + text.size(), out);
+  return number(out);
+}
+
+/// What the page shows of the segments, as one object of lists: of ten thousand segments each name stands
+/// only once.
+Json segments_by_column(const Json& segments) {
+  constexpr std::array whole = {"index",     "from",       "to",      "move",       "line",
+                                "length_mm", "duration_s", "dwell_s", "peak_joint", "limit_margin_joint",
+                                "findings"};
+  constexpr std::array figures = {"peak_ratio", "min_singular_value", "limit_margin", "highest_speed"};
   Json columns = Json::object();
-  for (const Json& entry : list) {
-    for (const auto& [name, value] : entry.items()) columns[name].push_back(value);
+  for (const Json& segment : segments) {
+    for (const char* name : whole) columns[name].push_back(segment.at(name));
+    for (const char* name : figures) columns[name].push_back(shortened(segment.at(name)));
   }
   return columns;
 }
@@ -29,9 +48,7 @@ std::string data(const Report& report, const std::vector<PathCurves>& curves) {
   root["strict"] = report.strict;
   for (std::size_t i = 0; i < report.paths.size(); ++i) {
     Json& path = root["paths"][i];
-    // A drift is a member of few segments and not shown.
-    for (Json& segment : path["segments"]) segment.erase("drift");
-    path["segments"] = by_column(path["segments"]);
+    path["segments"] = segments_by_column(path["segments"]);
     path["curves"] = curves_json(report.paths[i], curves.at(i));
   }
   std::string text = root.dump(-1, ' ', false, Json::error_handler_t::replace);
