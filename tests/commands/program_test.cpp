@@ -79,7 +79,7 @@ TEST_CASE("a clear path: status 0, text and files") {
   CHECK(folder.entries() == 4);
 }
 
-TEST_CASE("a flagged path: status 1; --quiet and - say nothing else") {
+TEST_CASE("a flagged path: status 1, and --quiet and - say nothing else") {
   const Folder folder;
   write_small_cell(folder, "175");
   CHECK(run(folder, "pathvet check path.xml").status == 1);

@@ -23,7 +23,7 @@ double value(const CircleQuadratic& q, double x) {
 
 }  // namespace
 
-TEST_CASE("angles wrap into (-pi, pi]") {
+TEST_CASE("angles wrap into minus pi to pi") {
   CHECK(wrap_angle(pi) == pi);
   CHECK(wrap_angle(-pi) == pi);
   CHECK(wrap_angle(0.3) == 0.3);

@@ -52,7 +52,7 @@ TEST_CASE("touching a limit is inside, to 1e-9 of its size") {
   CHECK(turns_inside_limits(arm, at(arm.joints[0].lower * (1 + 0.5e-9) + 2 * pi)).size() == 1);
 }
 
-TEST_CASE("a continuous joint turns into (-pi, pi]") {
+TEST_CASE("a continuous joint turns into minus pi to pi") {
   Arm arm = limited({{-180, 180}});
   arm.joints[0].continuous = true;
   const auto turns = turns_inside_limits(arm, degrees({530}));
