@@ -63,6 +63,10 @@ BoundJacobian bound_jacobian(const Chain& chain, const JointVector& q, Orientati
   return out;
 }
 
+std::optional<double> smallest_singular_value(const Matrix66& inverse) {
+  return by_squaring(inverse);
+}
+
 double smallest_singular_low(const Matrix66& inverse) {
   const Matrix66 gram = symmetric_product(inverse);
   return 1.0 / std::sqrt(gram.norm());

@@ -246,6 +246,7 @@ typename SegmentFollower<N>::Outcome SegmentFollower<N>::follow_fraction(State& 
           state.rate.norm() + h * state.inverse_norm * second, second, third);
     const bool cut = tall && next.fraction != wanted && most >= wanted - state.fraction;
     std::swap(state, next);
+    if constexpr (N == 6) step.end_inverse = &state.inverse;
     if (!emit(step, state, sink)) return Outcome::stopped;
     if (cut) return Outcome::lost;
     std::swap(step.begin, step.end);

@@ -34,7 +34,7 @@ class SegmentFollower final : public Follower {
   Outcome cross_meeting(ArcTracker& arc, const ArcTracker::Meeting& meeting, TrackSink& sink);
   Outcome restart(State& state, TrackSink& sink);
   Outcome recover(State& state, std::optional<ArcTracker::Unknowns>& sense, TrackSink& sink);
-  bool back_in_reach(State& state, double unreached, double reached, const JointVector& left,
+  bool back_in_reach(State& state, double lost_at, double unreached, double reached, const JointVector& left,
                      std::optional<ArcTracker::Unknowns>& sense);
 
   [[nodiscard]] bool converge(State& state) const { return converge(piece_, state); }
@@ -47,6 +47,7 @@ class SegmentFollower final : public Follower {
   [[nodiscard]] Node node(const State& state) const;
   [[nodiscard]] double spacing(int piece) const;
   [[nodiscard]] double affordable(const State& state) const;
+  bool land(double fraction, double ahead, const JointVector& target, State& landed) const;
   bool emit(const Step& step, const State& at_end, TrackSink& sink) const;
   bool emit_crossing(const Step& step, TrackSink& sink) const;
   void adopt(State& state, double fraction, const JointVector& q) const;

@@ -16,15 +16,16 @@ namespace {
 /// Below this regularity of the arc's linearised task a meeting with another solution curve is looked for. A
 /// pass that misses by the exact tolerance (about 1e-7 in scaled units) bottoms out near its square root.
 constexpr double suspicious_regularity = 4e-3;
-/// Scaled distance to a meeting that is crossed in one step. The curve that misses it by the exact tolerance e strays from
-/// the smooth one by about e / distance^2 in its rates, the quintic across by about (2 distance)^5: here both are near
-/// 1e-5.
+/// Scaled distance to a meeting that is crossed in one step. The curve that misses it by the exact tolerance
+/// e strays from the smooth one by about e / distance^2 in its rates, the quintic across by about (2
+/// distance)^5: here both are near 1e-5.
 constexpr double meeting_reach = 0.04;
 constexpr int most_arc_steps = 200000;
 constexpr double least_arc_step = 1e-13;
 /// The solutions beyond a singular place are looked at this far ahead (scaled length of the target's motion):
 /// far beyond the tolerance of an exact pass, near enough to be "there".
 constexpr double probe_length = 1e-5;
+constexpr double nearest_probe = 0.009;  // of it: the nearest that is still beyond the tolerance
 /// Solutions this near to each other (rad, scaled) belong to one fold seen from the probe.
 constexpr double fold_reach = 0.3;
 /// From an exactly singular begin the motion's direction decides, which is known to about the exact tolerance
@@ -369,6 +370,16 @@ typename SegmentFollower<N>::Outcome SegmentFollower<N>::restart(State& state, T
   return affordable(state) >= least_share * spacing_ ? Outcome::calm : Outcome::singular;
 }
 
+/// The configuration at `fraction` that continues the solution `target` found a little ahead of it.
+template <int N>
+bool SegmentFollower<N>::land(double fraction, double ahead, const JointVector& target, State& landed) const {
+  State next;
+  adopt(next, fraction + ahead, target);
+  if (!converge(next)) return false;
+  adopt(landed, fraction, JointVector(next.q - task_.scale().cwiseProduct(ahead * next.rate)));
+  return converge(landed);
+}
+
 /// Where the branch ends: jump to a solution that is left, or go on from where the pose comes back into
 /// reach.
 template <int N>
@@ -382,27 +393,26 @@ typename SegmentFollower<N>::Outcome SegmentFollower<N>::recover(State& state,
   const auto solutions = [&](double fraction) {
     return context_.finder.find(pose_at(fraction), context_.orientation).joints;
   };
-  if (from + ahead < end_ || ahead == 0) {
-    if (const auto target = jump_target(context_.arm, left, solutions(from + ahead))) {
-      State next;
-      adopt(next, from + ahead, *target);
-      if (converge(next)) {
-        State landed;
-        adopt(landed, from, JointVector(next.q - task_.scale().cwiseProduct(ahead * next.rate)));
-        if (converge(landed)) {
-          if (lost_) {
-            sink.regained(from, landed.q);
-          } else {
-            sink.jump(from, left, landed.q);
-          }
-          lost_ = false;
-          signs_ = context_.branches.signs(landed.q);
-          state = landed;
-          task_.bound_bend(state);
-          return affordable(state) >= least_share * spacing_ ? Outcome::calm : Outcome::singular;
-        }
+  // Beside another singularity the solutions turn fast: looked at nearer by, they are found again at the
+  // place itself.
+  for (double near = ahead; near >= nearest_probe * ahead && (from + near < end_ || ahead == 0);
+       near *= 0.1) {
+    const auto target = jump_target(context_.arm, left, solutions(from + near));
+    if (!target) break;
+    State landed;
+    if (land(from, near, *target, landed)) {
+      if (lost_) {
+        sink.regained(from, landed.q);
+      } else {
+        sink.jump(from, left, landed.q);
       }
+      lost_ = false;
+      signs_ = context_.branches.signs(landed.q);
+      state = landed;
+      task_.bound_bend(state);
+      return affordable(state) >= least_share * spacing_ ? Outcome::calm : Outcome::singular;
     }
+    if (ahead == 0) break;
   }
   if (!lost_) sink.lost(from, left);
   lost_ = true;
@@ -410,7 +420,7 @@ typename SegmentFollower<N>::Outcome SegmentFollower<N>::recover(State& state,
   while (unreached < end_) {
     const double next = std::min(end_, unreached + spacing_);
     if (!solutions(next).empty()) {
-      if (back_in_reach(state, unreached, next, left, sense)) {
+      if (back_in_reach(state, from, unreached, next, left, sense)) {
         sink.regained(state.fraction, state.q);
         lost_ = false;
         return Outcome::singular;
@@ -423,7 +433,7 @@ typename SegmentFollower<N>::Outcome SegmentFollower<N>::recover(State& state,
 }
 
 template <int N>
-bool SegmentFollower<N>::back_in_reach(State& state, double unreached, double reached,
+bool SegmentFollower<N>::back_in_reach(State& state, double lost_at, double unreached, double reached,
                                        const JointVector& left, std::optional<ArcTracker::Unknowns>& sense) {
   const auto solutions = [&](double fraction) {
     return context_.finder.find(pose_at(fraction), context_.orientation).joints;
@@ -462,7 +472,7 @@ bool SegmentFollower<N>::back_in_reach(State& state, double unreached, double re
           step.length, step.begin.fraction_rate, step.end.fraction_rate);
       Node fold;
       arc.at(step, t, fold);
-      if (fold.fraction < unreached - 10 * ahead) break;
+      if (fold.fraction < std::max(lost_at, unreached - 10 * ahead)) break;
       ArcTracker::Unknowns onwards(task_.joints() + 1);
       onwards.head(task_.joints()) = fold.rate.cwiseQuotient(task_.scale());
       onwards[task_.joints()] = 0;

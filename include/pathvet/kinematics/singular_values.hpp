@@ -1,5 +1,7 @@
 #pragma once
 
+#include <optional>
+
 #include "pathvet/kinematics/chain.hpp"
 #include "pathvet/model/path.hpp"
 
@@ -15,6 +17,10 @@ namespace pathvet {
 /// from singularities, by an SVD otherwise.
 [[nodiscard]] double smallest_singular_value(const Chain& chain, const JointVector& q,
                                              Orientation orientation);
+
+/// The same from the inverse of a 6 x 6 scaled Jacobian, by repeated squaring; none where the inverse has
+/// lost too many digits for that (smallest singular value below 1e-4).
+[[nodiscard]] std::optional<double> smallest_singular_value(const Eigen::Matrix<double, 6, 6>& inverse);
 
 /// Lower bound of the smallest singular value from the matrix' inverse W: (sum of sigma^-4)^(-1/4), that is
 /// ||W^T W||_F^(-1/2); at most a factor 6^(1/4) below it, and close where the second smallest is well apart.

@@ -31,6 +31,9 @@ struct Step {
   double length = 0;         ///< of t
   double fraction_unit = 1;  ///< arc steps: the fraction per unit of its share in the arc length
   Node begin, end;
+  /// Inverse of the scaled Jacobian at the end, where the follower has it at hand; valid while the step is
+  /// handed on.
+  const Eigen::Matrix<double, 6, 6>* end_inverse = nullptr;
   bool proven = false;  ///< continuity is proven: both ends lie on one smooth branch
   // Bounds on the norm of the first three derivatives, by t, of the joints (scaled: prismatic over the
   // characteristic length); of arc steps the fraction's share is included. Infinite where nothing is proven.

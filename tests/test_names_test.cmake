@@ -1,0 +1,22 @@
+# ctest takes a test's name through CMake lists: a semicolon cuts it in two and a single bracket swallows the names behind
+# it, and doctest calls a run that matches no test a success. So no name may hold one. Run by ctest and .ci/run:
+#   cmake -D SOURCE_DIR=<repository> -P tests/test_names_test.cmake
+cmake_minimum_required(VERSION 3.25)
+set(complaints "")
+file(GLOB_RECURSE files RELATIVE ${SOURCE_DIR} ${SOURCE_DIR}/tests/*_test.cpp)
+foreach(file IN LISTS files)
+  file(READ ${SOURCE_DIR}/${file} text)
+  string(REPLACE ";" "<semicolon>" text "${text}")
+  string(REPLACE "[" "<bracket>" text "${text}")
+  string(REPLACE "]" "<bracket>" text "${text}")
+  string(REGEX MATCHALL "TEST_CASE\\([ \n]*\"[^\"]*\"" names "${text}")
+  foreach(name IN LISTS names)
+    if(name MATCHES "<semicolon>|<bracket>|\\\\")
+      string(APPEND complaints "${file}: ${name}\n")
+    endif()
+  endforeach()
+endforeach()
+if(complaints)
+  message(NOTICE "${complaints}")
+  message(FATAL_ERROR "names of tests hold a semicolon, a bracket or a backslash")
+endif()
