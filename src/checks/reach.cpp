@@ -12,7 +12,8 @@ namespace {
 /// Weight of what must be held against what may be missed: the held part then slips by about miss / weight^2.
 constexpr double hold = 1e4;
 constexpr int most_iterations = 300;
-constexpr int grid = 24;  // of the worst miss along a stretch
+constexpr int grid = 24;          // of the worst miss along a stretch
+constexpr std::size_t every = 6;  // places of the grid one is looked at from all starts
 constexpr double held_orientation = 1e-3 * radians_per_degree;
 constexpr double held_position = 1e-2;  // mm
 
@@ -77,6 +78,14 @@ JointVector minimise(const ArmContext& context, const Pose& target, JointVector 
   return q;
 }
 
+/// The weight of what is held grows in stages: with the whole of it at once the way along the held poses is
+/// so narrow that the steps stall far from the least miss.
+JointVector minimise_holding(const ArmContext& context, const Pose& target, JointVector q, bool orientation) {
+  for (const double weight : {1.0, 30.0, 1e3, hold})
+    q = minimise(context, target, q, orientation ? 1 : weight, orientation ? weight : 1);
+  return q;
+}
+
 Miss measure(const ArmContext& context, const Pose& target, const JointVector& q) {
   Miss out;
   out.joints = q;
@@ -99,13 +108,10 @@ std::vector<JointVector> starts_round(const ArmContext& context, const JointVect
   return out;
 }
 
-}  // namespace
-
-Miss least_miss(const ArmContext& context, const Pose& target, const JointVector& start) {
-  const std::vector<JointVector> starts = starts_round(context, start);
+Miss least_from(const ArmContext& context, const Pose& target, const std::vector<JointVector>& starts) {
   std::optional<Miss> best;
   for (const JointVector& q : starts) {
-    const Miss miss = measure(context, target, minimise(context, target, q, 1, hold));
+    const Miss miss = measure(context, target, minimise_holding(context, target, q, true));
     if (miss.orientation < held_orientation && (!best || miss.position < best->position)) best = miss;
   }
   if (best) {
@@ -113,7 +119,7 @@ Miss least_miss(const ArmContext& context, const Pose& target, const JointVector
     return *best;
   }
   for (const JointVector& q : starts) {
-    const Miss miss = measure(context, target, minimise(context, target, q, hold, 1));
+    const Miss miss = measure(context, target, minimise_holding(context, target, q, false));
     if (miss.position < held_position && (!best || miss.orientation < best->orientation)) best = miss;
   }
   if (best) {
@@ -132,31 +138,55 @@ Miss least_miss(const ArmContext& context, const Pose& target, const JointVector
   return *best;
 }
 
+}  // namespace
+
+Miss least_miss(const ArmContext& context, const Pose& target, const JointVector& start) {
+  return least_from(context, target, starts_round(context, start));
+}
+
 Miss worst_miss(const ArmContext& context, const std::function<Pose(double)>& target, double from, double to,
                 const JointVector& start) {
-  const auto at = [&](double fraction, const JointVector& near) {
-    Miss miss = least_miss(context, target(fraction), near);
+  // From one place to the next the least miss is followed; where it counts, and now and then, it is sought
+  // from all starts, since another configuration may have come to miss by less.
+  const auto at = [&](double fraction, const JointVector& near, bool thorough) {
+    Miss miss = thorough ? least_miss(context, target(fraction), near)
+                         : least_from(context, target(fraction), {near});
     miss.fraction = fraction;
     return miss;
   };
   const auto size = [&](const Miss& miss) {
     return miss.holds_position ? miss.orientation * context.chain.characteristic_length() : miss.position;
   };
-  if (!(to > from)) return at(from, start);
+  if (!(to > from)) return at(from, start, true);
   std::array<Miss, grid + 1> misses;
-  std::size_t worst = 0;
+  std::array<bool, grid + 1> thorough{};
   for (std::size_t i = 0; i <= grid; ++i) {
-    misses[i] = at(from + (to - from) * static_cast<double>(i) / grid, i == 0 ? start : misses[i - 1].joints);
-    if (size(misses[i]) > size(misses[worst])) worst = i;
+    const double fraction = from + (to - from) * static_cast<double>(i) / grid;
+    const JointVector& near = i == 0 ? start : misses[i - 1].joints;
+    thorough[i] = i % every == 0;
+    misses[i] = at(fraction, near, thorough[i]);
+    if (!thorough[i] && misses[i].holds_orientation != misses[i - 1].holds_orientation) {
+      thorough[i] = true;
+      misses[i] = at(fraction, near, true);
+    }
+  }
+  std::size_t worst = 0;
+  while (true) {
+    for (std::size_t i = 0; i <= grid; ++i) {
+      if (size(misses[i]) > size(misses[worst])) worst = i;
+    }
+    if (thorough[worst]) break;
+    misses[worst] = at(misses[worst].fraction, misses[worst].joints, true);
+    thorough[worst] = true;
   }
   if (worst == 0 || worst == grid) return misses[worst];
   const JointVector near = misses[worst].joints;
-  const auto negative = [&](double fraction) { return -size(at(fraction, near)); };
+  const auto negative = [&](double fraction) { return -size(at(fraction, near, false)); };
   std::uintmax_t iterations = 40;
   const double best = boost::math::tools::brent_find_minima(negative, misses[worst - 1].fraction,
                                                             misses[worst + 1].fraction, 30, iterations)
                           .first;
-  const Miss refined = at(best, near);
+  const Miss refined = at(best, near, true);
   return size(refined) > size(misses[worst]) ? refined : misses[worst];
 }
 

@@ -18,9 +18,12 @@
 #include "commands/signals.hpp"
 #include "commands/terminal.hpp"
 #include "pathvet/checks/check_path.hpp"
+#include "pathvet/reporting/csv.hpp"
 #include "pathvet/reporting/curves.hpp"
 #include "pathvet/reporting/html.hpp"
 #include "pathvet/reporting/json.hpp"
+#include "pathvet/reporting/junit.hpp"
+#include "pathvet/reporting/sarif.hpp"
 #include "pathvet/reporting/trace.hpp"
 #include "pathvet/xml/read.hpp"
 
@@ -37,7 +40,13 @@ po::options_description check_options() {
       ("json", po::value<std::string>()->value_name("FILE"),
        "write the report as JSON (- is standard output)")  //
       ("html", po::value<std::string>()->value_name("FILE"),
-       "write the report as one page with charts and a view of the arm")                                //
+       "write the report as one page with charts and a view of the arm")  //
+      ("sarif", po::value<std::string>()->value_name("FILE"),
+       "write the findings as SARIF, for systems that show them beside the path file")  //
+      ("junit", po::value<std::string>()->value_name("FILE"),
+       "write a test case for every segment, for build servers")  //
+      ("csv", po::value<std::string>()->value_name("FILE"),
+       "write the findings as a table for a spreadsheet")                                               //
       ("trace", po::value<std::string>()->value_name("FILE"), "write every sample of one path as CSV")  //
       ("quiet", "no text on standard output")                                                           //
       ("strict", "warnings count towards the verdict and the exit status");
@@ -164,11 +173,18 @@ std::unique_ptr<Output> open(const std::optional<OutputRequest>& request) {
   return request ? std::make_unique<Output>(request->target) : nullptr;
 }
 
+/// Nothing where that medium isn't asked for.
+void write(const Report& report, Output* output, void (*writer)(const Report&, std::ostream&)) {
+  if (!output) return;
+  writer(report, output->stream());
+  output->finish();
+}
+
 }  // namespace
 
 std::vector<OutputRequest> CheckSettings::outputs() const {
   std::vector<OutputRequest> all;
-  for (const auto& output : {json, html, trace}) {
+  for (const auto& output : {json, html, sarif, junit, csv, trace}) {
     if (output) all.push_back(*output);
   }
   return all;
@@ -202,6 +218,9 @@ Setup<CheckSettings> setup_check(const Arguments& arguments) {
   settings.quiet = values.has("quiet");
   settings.json = read_output(values, "json");
   settings.html = read_output(values, "html");
+  settings.sarif = read_output(values, "sarif");
+  settings.junit = read_output(values, "junit");
+  settings.csv = read_output(values, "csv");
   settings.trace = read_output(values, "trace");
   settings.log_level = read_log_level(values);
   if (settings.paths.empty()) values.problem("no path file is named");
@@ -229,18 +248,23 @@ int run_check(const CheckSettings& settings) {
   check_cells(settings, inputs);
   const auto json = open(settings.json);
   const auto html = open(settings.html);
+  const auto sarif = open(settings.sarif);
+  const auto junit = open(settings.junit);
+  const auto csv = open(settings.csv);
   const auto trace = open(settings.trace);
 
   Report report{PATHVET_VERSION, settings.options, settings.strict, {}};
   std::vector<PathCurves> curves;
   report.paths = check_all(settings, inputs, trace.get(), html ? &curves : nullptr);
   if (trace) trace->finish();
-  if (json) write_json(report, json->stream());
-  if (json) json->finish();
+  write(report, json.get(), write_json);
+  write(report, sarif.get(), write_sarif);
+  write(report, junit.get(), write_junit);
+  write(report, csv.get(), write_csv);
   if (html) write_html(report, curves, html->stream());
   if (html) html->finish();
   if (stop_requested()) throw Stopped();
-  for (Output* output : {json.get(), html.get(), trace.get()}) {
+  for (Output* output : {json.get(), html.get(), sarif.get(), junit.get(), csv.get(), trace.get()}) {
     if (output) output->commit();
   }
   if (settings.wants_text()) {

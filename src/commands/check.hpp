@@ -14,7 +14,7 @@ struct CheckSettings {
   CheckOptions options;
   bool strict = false;
   bool quiet = false;
-  std::optional<OutputRequest> json, html, trace;
+  std::optional<OutputRequest> json, html, sarif, junit, csv, trace;
   spdlog::level::level_enum log_level = spdlog::level::warn;
 
   [[nodiscard]] std::vector<OutputRequest> outputs() const;

@@ -7,8 +7,8 @@
 
 namespace pathvet::commands {
 
-/// Runs `work` on `threads` threads at once, this one among them, and waits for all. The first exception that any of
-/// them throws is thrown here.
+/// Runs `work` on `threads` threads at once, this one among them, and waits for all. The first exception that
+/// any of them throws is thrown here.
 template <typename Work>
 void in_parallel(int threads, const Work& work) {
   std::exception_ptr failure;

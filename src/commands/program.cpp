@@ -6,6 +6,7 @@
 #include <array>
 
 #include "commands/check.hpp"
+#include "commands/compare.hpp"
 #include "commands/errors.hpp"
 #include "commands/outputs.hpp"
 #include "commands/pose.hpp"
@@ -41,8 +42,10 @@ struct Command {
   int (*run)(const char* name, const Arguments& arguments);
 };
 
-constexpr std::array<Command, 4> commands = {{
+constexpr std::array<Command, 5> commands = {{
     {"check", "check paths: the main job", run_command<setup_check, check_help, run_check>},
+    {"compare", "what a change fixed, brought or left",
+     run_command<setup_compare, compare_help, run_compare>},
     {"pose", "one pose or configuration", run_command<setup_pose, pose_help, run_pose>},
     {"retime", "the same path at speeds that hold", run_command<setup_retime, retime_help, run_retime>},
     {"starts", "every start configuration, best first", run_command<setup_starts, starts_help, run_starts>},

@@ -102,7 +102,7 @@ inline Finding finding(Code code, int segment, int axis, double value, double li
   f.limit = limit;
   f.quantity = quantity;
   if (limit != 0) f.ratio = std::abs(value / limit);
-  f.joints = JointVector(3);
+  f.joints.resize(3);
   f.joints << 200, deg(45), deg(-15);
   f.pose.position = {1, 2.5, -3};
   return f;

@@ -15,8 +15,9 @@ using JointVector = Eigen::Matrix<double, Eigen::Dynamic, 1, 0, max_joints, 1>;
 
 enum class JointType { revolute, prismatic };
 
-/// A joint and its link: `before * motion(q) * after`, where the motion is about (revolute) or along (prismatic) the z
-/// axis of the frame that `before` leads to. Every way to write a link in a cell file comes down to this one form:
+/// A joint and its link: `before * motion(q) * after`, where the motion is about (revolute) or along
+/// (prismatic) the z axis of the frame that `before` leads to. Every way to write a link in a cell file comes
+/// down to this one form:
 ///   distal DH:    before = Rz(theta) Tz(d), after = Tx(a) Rx(alpha)
 ///   proximal DH:  before = Rx(alpha) Tx(a) Rz(theta) Tz(d), after = identity
 ///   mount:        before = placement * A, after = A^-1, where A turns z into `axis`

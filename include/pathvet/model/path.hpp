@@ -35,13 +35,14 @@ struct Waypoint {
   double joint_rate = 1;  ///< share of the joint speeds, in (0, 1]
   double blend = 0;       ///< mm
   double dwell = 0;       ///< s
-  /// Values of each positioner's joints (index as Cell::positioners), rad or mm; empty where the cell has none.
+  /// Values of each positioner's joints (index as Cell::positioners), rad or mm; empty where the cell has
+  /// none.
   std::vector<JointVector> external;
 };
 
 /// A path file as read: at least two waypoints, const after construction.
 struct Path {
-  std::string file;       ///< as given by the user
+  std::string file;  ///< as given by the user
   std::string name;
   std::string cell_file;  ///< as opened
   std::vector<Waypoint> waypoints;

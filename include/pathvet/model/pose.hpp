@@ -18,16 +18,14 @@ struct Pose {
     return {rotation * inner.rotation, rotation * inner.position + position};
   }
   [[nodiscard]] Vector3 operator*(const Vector3& point) const { return rotation * point + position; }
-  [[nodiscard]] Pose inverse() const {
-    return {rotation.transpose(), -(rotation.transpose() * position)};
-  }
+  [[nodiscard]] Pose inverse() const { return {rotation.transpose(), -(rotation.transpose() * position)}; }
 };
 
 /// Rotation by |vector| rad about `vector`; exact (no small-angle branch) for any length, zero included.
 [[nodiscard]] Matrix3 rotation_from_vector(const Vector3& vector);
 
-/// The rotation vector (axis times angle, rad, angle in [0, pi]) of a rotation matrix; accurate at 0 and near pi,
-/// where the axis' sign is the one whose first non-zero component is positive.
+/// The rotation vector (axis times angle, rad, angle in [0, pi]) of a rotation matrix; accurate at 0 and near
+/// pi, where the axis' sign is the one whose first non-zero component is positive.
 [[nodiscard]] Vector3 rotation_vector(const Matrix3& rotation);
 
 /// `Rz(yaw) Ry(pitch) Rx(roll)`, angles in rad.

@@ -1,7 +1,7 @@
 #pragma once
 
-/// The one unit system of the code: millimetre, radian, second. Degrees exist only in `xml` (reading) and `reporting`
-/// (writing), which convert with the two constants below.
+/// The one unit system of the code: millimetre, radian, second. Degrees exist only in `xml` (reading) and
+/// `reporting` (writing), which convert with the two constants below.
 
 namespace pathvet {
 
