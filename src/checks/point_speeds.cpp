@@ -7,9 +7,7 @@ namespace {
 
 /// Walks from the base to the TCP, handing each point's velocity and acceleration to `take`.
 template <int N, typename Take>
-void walk(const Chain& chain, const Node& node, Take take) {
-  ChainState<N> state;
-  chain.evaluate<N>(node.q, state);
+void walk(const Chain& chain, const ChainState<N>& state, const Node& node, Take take) {
   const int n = chain.joint_count();
   Vector3 spin = Vector3::Zero();
   Vector3 spin_rate = Vector3::Zero();
@@ -42,7 +40,9 @@ std::string PointSpeeds::name(int point) const {
 
 std::array<PointSpeeds::Speed, max_joints> PointSpeeds::at(const Node& node) const {
   std::array<Speed, max_joints> out{};
-  walk<Eigen::Dynamic>(chain_, node, [&](int i, const Vector3& velocity, const Vector3& acceleration) {
+  ChainState<Eigen::Dynamic> state;
+  chain_.evaluate<Eigen::Dynamic>(node.q, state);
+  walk<Eigen::Dynamic>(chain_, state, node, [&](int i, const Vector3& velocity, const Vector3& acceleration) {
     Speed& speed = out[static_cast<std::size_t>(i)];
     speed.value = velocity.norm();
     speed.slope = speed.value > 0 ? velocity.dot(acceleration) / speed.value : 0.0;
@@ -50,15 +50,18 @@ std::array<PointSpeeds::Speed, max_joints> PointSpeeds::at(const Node& node) con
   return out;
 }
 
-void PointSpeeds::speeds(const Node& node, std::array<double, max_joints>& out) const {
+void PointSpeeds::speeds(const Node& node, const ChainState<6>* state,
+                         std::array<double, max_joints>& out) const {
   const auto take = [&](int i, const Vector3& velocity, const Vector3&) {
     out[static_cast<std::size_t>(i)] = velocity.norm();
   };
-  if (chain_.joint_count() == 6) {
-    walk<6>(chain_, node, take);
-  } else {
-    walk<Eigen::Dynamic>(chain_, node, take);
+  if (state != nullptr) {
+    walk<6>(chain_, *state, node, take);
+    return;
   }
+  ChainState<Eigen::Dynamic> own;
+  chain_.evaluate<Eigen::Dynamic>(node.q, own);
+  walk<Eigen::Dynamic>(chain_, own, node, take);
 }
 
 }  // namespace pathvet

@@ -23,8 +23,8 @@ class PointSpeeds {
     double slope = 0;
   };
   [[nodiscard]] std::array<Speed, max_joints> at(const Node& node) const;
-  /// The speeds alone, for six joints in a third of the time.
-  void speeds(const Node& node, std::array<double, max_joints>& out) const;
+  /// The speeds alone. `state`: the chain at the node, where it is at hand; null otherwise.
+  void speeds(const Node& node, const ChainState<6>* state, std::array<double, max_joints>& out) const;
 
  private:
   const Arm& arm_;

@@ -2,12 +2,7 @@
 
 #include <algorithm>
 #include <array>
-#include <boost/math/tools/minima.hpp>
 #include <cmath>
-
-#include "pathvet/kinematics/singular_values.hpp"
-#include "reach.hpp"
-#include "singular_detail.hpp"
 
 namespace pathvet {
 namespace {
@@ -17,8 +12,6 @@ constexpr int profile_bins = 48;
 /// rate of the fraction below `stalled` of it is a fold: the joint speeds grow without bound there.
 constexpr double still = 1e-9;
 constexpr double stalled = 1e-7;
-constexpr int singular_halvings = 7;
-constexpr int minimum_bits = 26;  // half of a double's: a minimum's place is not known better
 
 /// d(rate / fraction_rate)/dt times fraction_rate squared.
 double speed_slope(const Axis& axis, const Node& n) {
@@ -75,6 +68,9 @@ SegmentChecker::SegmentChecker(const SegmentContext& context, const StepSampler&
       ratio_profile_(profile_bins, 0.0),
       rate_scale_(context.duration > 0 ? 1.0 / context.duration : 0.0) {
   const CheckOptions& o = context.options;
+  constexpr std::size_t most_watches_an_axis = 10;
+  watches_.reserve(most_watches_an_axis * context.axes.size());
+  watch_range_.reserve(context.axes.size());
   for (std::size_t i = 0; i < context.axes.size(); ++i) {
     const Axis& axis = context.axes[i];
     const std::size_t first = watches_.size();
@@ -135,6 +131,7 @@ bool SegmentChecker::step(const Step& step, double position_residual, double ori
   check_singular(step);
   if (context_.cartesian) check_proof(step);
   trace(step, position_residual, orientation_residual);
+  fresh_ = false;
   if (observer_) observer_->step(context_.index, step, sampler_);
   ++samples_;
   return true;
@@ -168,8 +165,8 @@ void SegmentChecker::tally(std::size_t index, const Step& step) {
   const double rate_a = axis.of(step.begin.rate);
   const double rate_b = axis.of(step.end.rate);
   t.travel += std::abs(b - a);
-  const Spot begin{0, step.begin};
   if (rate_a * rate_b < 0 && std::abs(rate_a - rate_b) > slope_noise * std::abs(b)) {
+    const Spot begin{0, step.begin};
     const Spot end{step.length, step.end};
     const Spot turn =
         root_between(sampler_, step, begin, end, [&](const Spot& s) { return axis.of(s.node.rate); });
@@ -192,7 +189,8 @@ void SegmentChecker::tally(std::size_t index, const Step& step) {
       t.peak_speed = speed;
     }
   };
-  take(step.begin);
+  // The begin was the end of the step before, but for the first one and after a gap.
+  if (fresh_ || step.kind != Step::Kind::fraction) take(step.begin);
   take(step.end);
   // d(rate / fraction_rate)/dt has the sign of this; a peak between the nodes is one where |speed| rises,
   // then falls.
@@ -207,6 +205,7 @@ void SegmentChecker::tally(std::size_t index, const Step& step) {
                  -slope_b / std::pow(step.end.fraction_rate, 2)) *
             step.length;
     if (rise * rate_scale_ / *axis.speed > t.peak_ratio) {
+      const Spot begin{0, step.begin};
       const Spot end{step.length, step.end};
       Spot top;
       if (extreme_between(sampler_, step, begin, end, slope, top)) {
@@ -234,6 +233,9 @@ void SegmentChecker::check_axis(std::size_t index, const Step& step) {
   const double fastest =
       (0.5 * (std::abs(rate_a) + std::abs(rate_b)) + 0.5 * h * reach * step.second_bound) * rate_scale_;
   const double third = third_bound(axis, step);
+  const double strongest =
+      0.5 * (std::abs(axis.of(step.begin.rate_rate)) + std::abs(axis.of(step.end.rate_rate)) + h * third) *
+      rate_scale_ * rate_scale_;
   // Taking away a hair of the arc keeps joints that only round to a motion from counting as fast at a fold.
   const double hair = by_fraction ? 0.0 : still * reach * rate_scale_;
   for (std::size_t w = first; w < last; ++w) {
@@ -259,6 +261,8 @@ void SegmentChecker::check_axis(std::size_t index, const Step& step) {
           [&](const Spot& s) { return sign * axis.of(s.node.rate) / s.node.fraction_rate * rate_scale_; },
           [&](const Spot& s) { return sign * speed_slope(axis, s.node); });
     } else {
+      // Most steps are far from the limit, which the proven bound on the third derivative shows for nothing.
+      if (by_fraction && !watch.open && strongest < level) continue;
       check_acceleration(watch, axis, step, hair);
     }
   }
@@ -268,11 +272,6 @@ void SegmentChecker::check_axis(std::size_t index, const Step& step) {
 /// the quintic through the step's ends: they steer the search alone, every value reported is exact.
 void SegmentChecker::check_acceleration(Watch& watch, const Axis& axis, const Step& step, double hair) {
   const double square = rate_scale_ * rate_scale_;
-  if (step.kind == Step::Kind::fraction && !watch.open) {
-    // Most steps are far from the limit, which the proven bound on the third derivative shows for nothing.
-    const double ends = std::abs(axis.of(step.begin.rate_rate)) + std::abs(axis.of(step.end.rate_rate));
-    if (0.5 * (ends + step.length * third_bound(axis, step)) * square < watch.level) return;
-  }
   const JerkOfStep jerk(step);
   const double jerk_a = axis.of(jerk.joints(0));
   const double jerk_b = axis.of(jerk.joints(step.length));
@@ -301,7 +300,7 @@ void SegmentChecker::check_acceleration(Watch& watch, const Axis& axis, const St
 /// speed.
 void SegmentChecker::check_points(const Step& step) {
   std::array<double, max_joints> at_end;
-  points_.speeds(step.end, at_end);
+  points_.speeds(step.end, step.end_chain, at_end);
   const auto take = [&](const Node& node, const std::array<double, max_joints>& speeds) {
     if (at_fold(step, node)) return;
     const double scale = rate_scale_ / node.fraction_rate;
@@ -312,7 +311,7 @@ void SegmentChecker::check_points(const Step& step) {
   };
   if (samples_ == 0) {
     std::array<double, max_joints> at_begin;
-    points_.speeds(step.begin, at_begin);
+    points_.speeds(step.begin, nullptr, at_begin);
     take(step.begin, at_begin);
   }
   take(step.end, at_end);
@@ -394,201 +393,6 @@ void SegmentChecker::watch_step(Watch& watch, const Step& step, F value, D slope
   }
 }
 
-void SegmentChecker::open(Watch& watch, const Node& node) {
-  watch.open = true;
-  watch.tainted = watch.unbounded = false;
-  watch.begin = watch.peak = node.fraction;
-  watch.score = -std::numeric_limits<double>::infinity();
-  watch.joints = node.q;
-}
-
-void SegmentChecker::widen(Watch& watch, const Node& node, double score) {
-  // Values that agree to rounding are one peak: the earlier place stands.
-  const bool first = std::isinf(watch.score);
-  if (watch.unbounded || (!first && !(score > watch.score + 1e-13 * std::abs(watch.score)))) return;
-  watch.score = score;
-  watch.peak = node.fraction;
-  watch.joints = node.q;
-}
-
-Finding SegmentChecker::finding(Code code, int axis, double begin, double end, double peak,
-                                const JointVector& joints) const {
-  Finding f;
-  f.code = code;
-  f.segment = context_.index;
-  f.axis = axis;
-  f.begin = begin;
-  f.end = end;
-  f.peak = peak;
-  f.begin_length = context_.length_at(begin);
-  f.end_length = context_.length_at(end);
-  f.peak_length = context_.length_at(peak);
-  f.begin_time = begin * context_.duration;
-  f.end_time = end * context_.duration;
-  f.peak_time = peak * context_.duration;
-  f.joints = joints;
-  f.pose = context_.frame(peak).inverse() * context_.arm.chain.forward(joints);
-  return f;
-}
-
-void SegmentChecker::close(Watch& watch, double fraction) {
-  if (!watch.open) return;
-  watch.open = false;
-  const Axis* axis = watch.axis >= 0 ? &context_.axes[static_cast<std::size_t>(watch.axis)] : nullptr;
-  if (watch.code == Code::limit_margin && !(watch.score > watch.least)) return;
-  Finding f = finding(watch.code, watch.axis, watch.begin, fraction, watch.peak, watch.joints);
-  f.limit = watch.limit;
-  f.unbounded = watch.unbounded;
-  const bool angular = axis && axis->type == JointType::revolute;
-  switch (watch.code) {
-    case Code::joint_limit:
-      f.value = axis->of(watch.joints);
-      f.quantity = angular ? Quantity::angle : Quantity::length;
-      break;
-    case Code::limit_margin:
-      f.value = watch.limit - watch.score;
-      f.quantity = angular ? Quantity::angle : Quantity::length;
-      break;
-    case Code::joint_speed:
-    case Code::speed_margin:
-      f.quantity = angular ? Quantity::angular_speed : Quantity::linear_speed;
-      if (!watch.unbounded) {
-        f.value = watch.sign * watch.score;
-        f.ratio = watch.score / *axis->speed;
-      }
-      break;
-    case Code::joint_acceleration:
-      f.quantity = angular ? Quantity::angular_acceleration : Quantity::linear_acceleration;
-      if (!watch.unbounded) {
-        f.value = watch.sign * watch.score;
-        f.ratio = watch.score / *axis->acceleration;
-      }
-      break;
-    case Code::arm_speed:
-      f.quantity = Quantity::linear_speed;
-      f.point = points_.name(watch.point);
-      if (!watch.unbounded) {
-        f.value = watch.score;
-        f.ratio = watch.score / watch.limit;
-      }
-      break;
-    case Code::singular_pass:
-      f.quantity = Quantity::pure;
-      f.value = -watch.score;
-      f.singular = singular_detail(context_.arm, watch.joints);
-      break;
-    default:
-      break;
-  }
-  findings_.push_back(std::move(f));
-}
-
-void SegmentChecker::close_all(double fraction) {
-  for (Watch& watch : watches_) close(watch, fraction);
-  for (Watch& watch : point_watches_) close(watch, fraction);
-  close(singular_, fraction);
-  close(unproven_, fraction);
-  before_.reset();
-  falling_ = false;
-  singular_at_begin_.reset();
-}
-
-double SegmentChecker::singular_value(const JointVector& q) const {
-  return smallest_singular_value(context_.arm.chain, q, context_.arm.orientation);
-}
-
-void SegmentChecker::check_singular(const Step& step) {
-  const double threshold = context_.cartesian ? singular_.level : 0.0;
-  const bool by_fraction = step.kind == Step::Kind::fraction;
-  const double slack = 0.5 * step.singular_slope * step.length;
-  const double low = 0.5 * (step.begin.singular_low + step.end.singular_low) - slack;
-  const double so_far = min_singular_.value_or(std::numeric_limits<double>::infinity());
-  const bool pass_possible = singular_.open || !by_fraction || low < threshold;
-  if (!pass_possible && std::min(step.begin.singular_low, step.end.singular_low) > so_far && !falling_) {
-    singular_at_begin_.reset();
-    return;
-  }
-  const double at_begin = singular_at_begin_ ? *singular_at_begin_ : singular_value(step.begin.q);
-  const auto from_inverse = step.end_inverse ? smallest_singular_value(*step.end_inverse) : std::nullopt;
-  const double at_end = from_inverse ? *from_inverse : singular_value(step.end.q);
-  singular_at_begin_ = at_end;
-  if (pass_possible && threshold > 0) {
-    const auto value = [&](const Spot& s) { return threshold - singular_value(s.node.q); };
-    // Crossings by halving against the slope's bound: singular values are continuous, but not smooth where
-    // they cross.
-    std::vector<Spot> spots;
-    const std::function<void(const Spot&, double, const Spot&, double, int)> search =
-        [&](const Spot& a, double va, const Spot& b, double vb, int depth) {
-          const double span = b.t - a.t;
-          if ((va > 0) != (vb > 0)) {
-            spots.push_back(root_between(sampler_, step, a, b, value));
-            return;
-          }
-          const double bound =
-              std::isfinite(step.singular_slope) ? step.singular_slope : 4.0 / step.length * threshold;
-          if (std::abs(va) + std::abs(vb) > bound * span || depth >= singular_halvings) return;
-          Spot middle{a.t + 0.5 * span, {}};
-          sampler_.at(step, middle.t, middle.node);
-          const double vm = value(middle);
-          search(a, va, middle, vm, depth + 1);
-          search(middle, vm, b, vb, depth + 1);
-        };
-    const Spot begin{0, step.begin};
-    const Spot end{step.length, step.end};
-    const double vb = threshold - at_begin;
-    const double ve = threshold - at_end;
-    search(begin, vb, end, ve, 0);
-    spots.push_back(end);
-    bool offending = spots.size() % 2 == 1 ? std::max(vb, ve) > 0 : vb > 0;
-    Spot from = begin;
-    for (std::size_t i = 0; i < spots.size(); ++i) {
-      const Spot& to = spots[i];
-      if (offending) {
-        if (!singular_.open) open(singular_, from.node);
-        widen(singular_, from.node, i == 0 ? -at_begin : -threshold);
-        widen(singular_, to.node, i + 1 == spots.size() ? -at_end : -threshold);
-        if (i + 1 < spots.size()) close(singular_, to.node.fraction);
-      } else if (singular_.open) {
-        close(singular_, from.node.fraction);
-      }
-      offending = !offending;
-      from = to;
-    }
-  }
-  lowest_singular(step, at_begin, at_end);
-}
-
-/// Keeps the lowest singular value, refined between the nodes where a node is lower than both neighbours.
-void SegmentChecker::lowest_singular(const Step& step, double at_begin, double at_end) {
-  const auto take = [&](const Node& node, double value) {
-    if (!min_singular_ || value < *min_singular_) min_singular_ = value;
-    if (singular_.open) widen(singular_, node, -value);
-  };
-  const auto refine = [&](const Step& within) {
-    Node node;
-    const auto value = [&](double t) {
-      sampler_.at(within, t, node);
-      return singular_value(node.q);
-    };
-    const auto [t, lowest] = boost::math::tools::brent_find_minima(value, 0.0, within.length, minimum_bits);
-    sampler_.at(within, t, node);
-    take(node, lowest);
-    show_extreme(within, node);
-  };
-  const double so_far = min_singular_.value_or(std::numeric_limits<double>::infinity());
-  const double worst = singular_.open ? -singular_.score : so_far;
-  if (step.kind == Step::Kind::interpolated) refine(step);
-  // The step before fell to its end, this one rises from there: the minimum lies in one of the two.
-  if (falling_ && before_ && at_end > at_begin && at_begin <= std::max(so_far, worst) * (1 + 1e-12)) {
-    refine(*before_);
-    refine(step);
-  }
-  take(step.begin, at_begin);
-  take(step.end, at_end);
-  falling_ = at_end < at_begin;
-  if (falling_) before_ = step;
-}
-
 void SegmentChecker::check_proof(const Step& step) {
   if (step.proven) {
     proven_length_ += std::max(0.0, step.end.fraction - step.begin.fraction);
@@ -629,79 +433,6 @@ void SegmentChecker::trace(const Step& step, double position_residual, double or
 void SegmentChecker::show_extreme(const Step& step, const Node& node) {
   if (is_traced())
     with_sample(step, node, 0, 0, [&](const TraceSample& sample) { observer_->extreme(sample); });
-}
-
-void SegmentChecker::add(Finding f) {
-  findings_.push_back(std::move(f));
-}
-
-void SegmentChecker::flip(double fraction, const Node& before, const Node& after) {
-  Finding f =
-      finding(Code::branch_flip, -1, fraction, fraction, fraction, JointVector(0.5 * (before.q + after.q)));
-  f.from_joints = before.q;
-  f.to_joints = after.q;
-  f.from_branch = context_.arm.branches.signs(before.q);
-  f.to_branch = context_.arm.branches.signs(after.q);
-  findings_.push_back(std::move(f));
-}
-
-void SegmentChecker::jump(double fraction, const JointVector& from, const JointVector& to) {
-  close_all(fraction);
-  anew_ = true;
-  Finding f = finding(Code::joint_jump, -1, fraction, fraction, fraction, from);
-  f.from_joints = from;
-  f.to_joints = to;
-  f.from_branch = context_.arm.branches.signs(from);
-  f.to_branch = context_.arm.branches.signs(to);
-  findings_.push_back(std::move(f));
-}
-
-void SegmentChecker::lost(double fraction, const JointVector& last) {
-  close_all(fraction);
-  lost_at_ = fraction;
-  lost_joints_ = last;
-}
-
-void SegmentChecker::regained(double fraction, const JointVector& /*at*/) {
-  if (!lost_at_) return;
-  anew_ = true;
-  const Miss miss = worst_miss(context_.arm, context_.target, *lost_at_, fraction, lost_joints_);
-  Finding f = finding(Code::out_of_reach, -1, *lost_at_, fraction, miss.fraction, miss.joints);
-  f.value = miss.holds_orientation || !miss.holds_position ? miss.position : miss.orientation;
-  f.quantity = miss.holds_orientation || !miss.holds_position ? Quantity::length : Quantity::angle;
-  f.position_miss = miss.position;
-  f.orientation_miss = miss.orientation;
-  findings_.push_back(std::move(f));
-  lost_at_.reset();
-}
-
-void SegmentChecker::finish() {
-  close_all(1.0);
-  if (lost_at_) regained(1.0, lost_joints_);
-  // Margins beside the matching error of the same joint, and unproven stretches with something worse on them,
-  // say nothing new.
-  const auto overlaps = [](const Finding& a, const Finding& b) {
-    return a.begin <= b.end && b.begin <= a.end;
-  };
-  // A jump parts what touches there, as a waypoint does: the margin on its one side is not beside the error
-  // on the other.
-  std::vector<double> jumps;
-  for (const Finding& f : findings_) {
-    if (f.code == Code::joint_jump) jumps.push_back(f.begin);
-  }
-  const auto parted = [&](const Finding& a, const Finding& b) {
-    return std::any_of(jumps.begin(), jumps.end(), [&](double at) {
-      return (a.end == at && b.begin == at) || (b.end == at && a.begin == at);
-    });
-  };
-  std::erase_if(findings_, [&](const Finding& f) {
-    return std::any_of(findings_.begin(), findings_.end(), [&](const Finding& other) {
-      if (!overlaps(f, other) || (f.code != Code::unproven && parted(f, other))) return false;
-      if (f.code == Code::limit_margin) return other.code == Code::joint_limit && other.axis == f.axis;
-      if (f.code == Code::speed_margin) return other.code == Code::joint_speed && other.axis == f.axis;
-      return f.code == Code::unproven && level(other.code) == Level::error;
-    });
-  });
 }
 
 }  // namespace pathvet

@@ -128,6 +128,7 @@ class SegmentChecker final : public TrackSink {
   std::optional<Step> before_;  // the step before, while a lowest singular value is being bracketed
   bool falling_ = false;        // the step before ended at the lowest singular value so far
   bool anew_ = false;           // the next step doesn't begin where the one before ended
+  bool fresh_ = true;           // the next step does not begin where the last one ended
   long samples_ = 0;
   double proven_length_ = 0;
   double position_residual_ = 0, orientation_residual_ = 0;

@@ -12,8 +12,10 @@ namespace {
 using BoundJacobian = Eigen::Matrix<double, Eigen::Dynamic, Eigen::Dynamic, 0, 6, max_joints>;
 using Matrix66 = Eigen::Matrix<double, 6, 6>;
 
-Matrix66 symmetric_product(const Matrix66& m) {
-  return m.transpose().lazyProduct(m);
+/// W^T W; the copy lets the product run down columns, which vectorises.
+Matrix66 gram_of(const Matrix66& w) {
+  const Matrix66 transposed = w.transpose();
+  return transposed.lazyProduct(w);
 }
 
 /// The inverse loses digits by the condition number; below this its smallest singular value is left to the
@@ -25,14 +27,15 @@ constexpr int most_squarings = 11;
 /// The greatest eigenvalue g of W^T W lies between a Rayleigh quotient and the 2^k-th root of the Frobenius
 /// norm of the 2^k-th power; squaring the matrix brings the two together however near the next eigenvalue is.
 std::optional<double> by_squaring(const Matrix66& inverse) {
-  const Matrix66 gram = symmetric_product(inverse);
+  const Matrix66 gram = gram_of(inverse);
   const double norm = gram.norm();
   if (!(norm < 1.0 / (trusted * trusted))) return std::nullopt;
   Matrix66 power = gram / norm;
   double log_scale = 0;  // of power^(1 / 2^k), in terms of gram / norm
   double exponent = 1;
   for (int k = 0; k < most_squarings; ++k) {
-    power = symmetric_product(power);
+    const Matrix66 square = power.lazyProduct(power);
+    power = square;
     const double size = power.norm();
     power /= size;
     exponent *= 2;
@@ -68,7 +71,7 @@ std::optional<double> smallest_singular_value(const Matrix66& inverse) {
 }
 
 double smallest_singular_low(const Matrix66& inverse) {
-  const Matrix66 gram = symmetric_product(inverse);
+  const Matrix66 gram = gram_of(inverse);
   return 1.0 / std::sqrt(gram.norm());
 }
 

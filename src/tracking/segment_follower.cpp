@@ -69,13 +69,16 @@ typename SegmentFollower<N>::End SegmentFollower<N>::run(const JointVector& q, b
 /// further than asked from sample to sample.
 template <int N>
 double SegmentFollower<N>::spacing(int piece) const {
-  constexpr int probes = 9;
+  // Along a straight line with an even turn nothing changes; elsewhere the motion is looked at in several
+  // places.
+  const CurveBounds& bounds = motion_.bounds(piece);
+  const int probes = bounds.second_linear > 0 || bounds.second_angular > 0 ? 9 : 1;
   const double begin = motion_.piece_begin(piece);
   const double length = motion_.piece_end(piece) - begin;
   double most = 0;
   CurvePoint point;
   for (int i = 0; i < probes; ++i) {
-    motion_.at(piece, begin + length * i / (probes - 1), point);
+    motion_.at(piece, begin + length * i / std::max(1, probes - 1), point);
     most = std::max({most, point.first.head<3>().norm() / settings_.step_length,
                      point.first.tail<3>().norm() / settings_.step_angle});
   }
@@ -195,16 +198,28 @@ typename SegmentFollower<N>::Outcome SegmentFollower<N>::begin_piece(State& stat
 
 template <int N>
 typename SegmentFollower<N>::Outcome SegmentFollower<N>::follow_fraction(State& state, TrackSink& sink) {
+  // The two states take turns: they are large, and swapping or copying them would cost as much as a Jacobian.
+  State spare;
+  State* now = &state;
+  State* ahead = &spare;
+  const Outcome outcome = take_steps(now, ahead, sink);
+  if (now != &state) state = *now;
+  return outcome;
+}
+
+template <int N>
+typename SegmentFollower<N>::Outcome SegmentFollower<N>::take_steps(State*& now, State*& ahead,
+                                                                    TrackSink& sink) {
   const double begin = motion_.piece_begin(piece_);
   const double second = task_.target_second(piece_);
   const double third = task_.target_third(piece_);
   const bool tall = task_.joints() < task_.rows();
-  State next;
-  next.q = state.q;
   JointColumn<N> jerk = JointColumn<N>::Zero(task_.joints());
   Step step;
-  step.begin = node(state);
-  while (state.fraction < end_) {
+  step.begin = node(*now);
+  while (now->fraction < end_) {
+    State& state = *now;
+    State& next = *ahead;
     task_.bound_bend(state);
     const double grid = begin + spacing_ * std::floor((state.fraction - begin) / spacing_ + 1.0 + 1e-6);
     const double wanted = grid > end_ - 1e-6 * spacing_ ? end_ : grid;
@@ -245,13 +260,16 @@ typename SegmentFollower<N>::Outcome SegmentFollower<N>::follow_fraction(State& 
     prove(step, state.inverse_norm, state.bend.first, state.bend.second,
           state.rate.norm() + h * state.inverse_norm * second, second, third);
     const bool cut = tall && next.fraction != wanted && most >= wanted - state.fraction;
-    std::swap(state, next);
-    if constexpr (N == 6) step.end_inverse = &state.inverse;
-    if (!emit(step, state, sink)) return Outcome::stopped;
+    std::swap(now, ahead);
+    if constexpr (N == 6) {
+      step.end_inverse = &next.inverse;
+      step.end_chain = &next.chain;
+    }
+    if (!emit(step, next, sink)) return Outcome::stopped;
     if (cut) return Outcome::lost;
-    std::swap(step.begin, step.end);
+    step.begin = step.end;
   }
-  signs_ = context_.branches.signs(state.q);
+  signs_ = context_.branches.signs(now->q);
   return Outcome::end;
 }
 

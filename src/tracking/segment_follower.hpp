@@ -29,6 +29,7 @@ class SegmentFollower final : public Follower {
 
   Outcome begin_piece(State& state, TrackSink& sink);
   Outcome follow_fraction(State& state, TrackSink& sink);
+  Outcome take_steps(State*& now, State*& ahead, TrackSink& sink);
   Outcome follow_arc(State& state, const std::optional<ArcTracker::Unknowns>& sense, TrackSink& sink);
   Outcome follow_damped(State& state, TrackSink& sink);
   Outcome cross_meeting(ArcTracker& arc, const ArcTracker::Meeting& meeting, TrackSink& sink);

@@ -64,6 +64,15 @@ typename SegmentFollower<N>::Outcome SegmentFollower<N>::follow_arc(
   at_end.error = TaskColumn<N>::Zero(task_.rows());
   double examined = suspicious_regularity;
   Step step;
+  const auto past_end = [&](const Node& n) { return n.fraction - end_; };
+  const auto solve = [&](const auto& value) {
+    const auto at = [&](double t) {
+      Node node;
+      arc.at(step, t, node);
+      return value(node);
+    };
+    return root(at, step.length, value(step.begin), value(step.end));
+  };
   const auto trim = [&](double t) {
     Node node;
     arc.at(step, t, node);
@@ -106,14 +115,7 @@ typename SegmentFollower<N>::Outcome SegmentFollower<N>::follow_arc(
       return follow_damped(state, sink);
     }
     if (step.end.fraction >= end_ && step.end.fraction_rate > 0) {
-      const double t = root(
-          [&](double at) {
-            Node node;
-            arc.at(step, at, node);
-            return node.fraction - end_;
-          },
-          step.length, step.begin.fraction - end_, step.end.fraction - end_);
-      trim(t);
+      trim(solve(past_end));
       step.end.fraction = end_;
       if (!emit(step, at_end, sink)) return Outcome::stopped;
       adopt(state, end_, step.end.q);
@@ -121,25 +123,11 @@ typename SegmentFollower<N>::Outcome SegmentFollower<N>::follow_arc(
       return Outcome::end;
     }
     if (step.end.fraction_rate <= 0 && step.begin.fraction_rate > 0) {
-      const double t = root(
-          [&](double at) {
-            Node node;
-            arc.at(step, at, node);
-            return node.fraction_rate;
-          },
-          step.length, step.begin.fraction_rate, step.end.fraction_rate);
-      trim(t);
+      trim(solve([](const Node& n) { return n.fraction_rate; }));
       const bool beyond = step.end.fraction > end_;
       if (beyond) {
         // The fold lies past the piece's end: the end is met on the way there.
-        const double at_the_end = root(
-            [&](double at) {
-              Node node;
-              arc.at(step, at, node);
-              return node.fraction - end_;
-            },
-            step.length, step.begin.fraction - end_, step.end.fraction - end_);
-        trim(at_the_end);
+        trim(solve(past_end));
         step.end.fraction = end_;
       } else {
         step.end.fraction_rate = 0;

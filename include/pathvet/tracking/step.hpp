@@ -2,7 +2,7 @@
 
 #include <limits>
 
-#include "pathvet/model/arm.hpp"
+#include "pathvet/kinematics/chain.hpp"
 
 namespace pathvet {
 
@@ -34,6 +34,8 @@ struct Step {
   /// Inverse of the scaled Jacobian at the end, where the follower has it at hand; valid while the step is
   /// handed on.
   const Eigen::Matrix<double, 6, 6>* end_inverse = nullptr;
+  /// The chain at the end, likewise (taken before a last correction of at most 2e-11).
+  const ChainState<6>* end_chain = nullptr;
   bool proven = false;  ///< continuity is proven: both ends lie on one smooth branch
   // Bounds on the norm of the first three derivatives, by t, of the joints (scaled: prismatic over the
   // characteristic length); of arc steps the fraction's share is included. Infinite where nothing is proven.
